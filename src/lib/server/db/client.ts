@@ -1,0 +1,71 @@
+import { setTimeout as wait } from 'node:timers/promises';
+import pg from 'pg';
+import { env } from '../env';
+import { log } from '../log';
+
+/** How long a request waits for a database that is just coming back, in milliseconds. */
+const patienceMs = 8_000;
+
+/** Errors that say "no connection now", before any statement was sent. */
+const notThereYet = new Set(['ECONNREFUSED', 'ECONNRESET', 'ENOENT', '57P03', '57P01', '53300']);
+
+function isNotThereYet(error: unknown): boolean {
+	if (!(error instanceof Error)) return false;
+	const code = (error as { code?: unknown }).code;
+	return (
+		(typeof code === 'string' && notThereYet.has(code)) ||
+		error.message === 'Connection terminated unexpectedly'
+	);
+}
+
+let pool: pg.Pool | undefined;
+
+/** The process's connections as the application's role. */
+export function getPool(): pg.Pool {
+	if (!pool) {
+		pool = new pg.Pool({
+			connectionString: env().DATABASE_URL,
+			max: 12,
+			idleTimeoutMillis: 30_000,
+			connectionTimeoutMillis: 5_000,
+			statement_timeout: 30_000,
+			idle_in_transaction_session_timeout: 60_000,
+			application_name: 'bowkeeper'
+		});
+		// An idle connection that breaks is dropped by the pool; without a listener the process would end.
+		pool.on('error', (error) => log.warn({ err: error }, 'idle database connection lost'));
+	}
+	return pool;
+}
+
+/**
+ * A connection on which `opening` (what begins a transaction) has run. While the database restarts
+ * this waits up to eight seconds, so that a request in that moment is late and not lost. Nothing but
+ * the opening was sent, so trying again is safe.
+ * @throws the last connection error when the database stays away
+ */
+export async function connect(opening: string): Promise<pg.PoolClient> {
+	const until = Date.now() + patienceMs;
+	for (let delayMs = 50; ; delayMs = Math.min(delayMs * 2, 800)) {
+		try {
+			const client = await getPool().connect();
+			try {
+				await client.query(opening);
+				return client;
+			} catch (error) {
+				client.release(true);
+				throw error;
+			}
+		} catch (error) {
+			if (!isNotThereYet(error) || Date.now() + delayMs > until) throw error;
+			await wait(delayMs);
+		}
+	}
+}
+
+/** Ends the connections; for a graceful stop. */
+export async function closePool(): Promise<void> {
+	const ending = pool;
+	pool = undefined;
+	await ending?.end();
+}

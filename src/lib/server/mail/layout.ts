@@ -1,0 +1,38 @@
+/** What a letter says; one content, written out as plain text and as HTML. */
+export interface LetterContent {
+	subject: string;
+	greeting: string;
+	paragraphs: string[];
+	action?: { label: string; url: string };
+	/** Said under the action in small type, for example how long a link holds. */
+	note?: string;
+	/** Who writes: the operator's name or the product's. */
+	from: string;
+}
+
+function escapeHtml(value: string): string {
+	return value
+		.replaceAll('&', '&amp;')
+		.replaceAll('<', '&lt;')
+		.replaceAll('>', '&gt;')
+		.replaceAll('"', '&quot;');
+}
+
+/** The letter as plain text. */
+export function letterText(content: LetterContent): string {
+	const parts = [content.greeting, ...content.paragraphs];
+	if (content.action) parts.push(`${content.action.label}:\n${content.action.url}`);
+	if (content.note) parts.push(content.note);
+	parts.push(content.from);
+	return parts.join('\n\n') + '\n';
+}
+
+/** The letter as HTML: one column, no pictures, readable without its styles. */
+export function letterHtml(content: LetterContent): string {
+	const paragraph = (text: string, style = '') =>
+		`<p style="margin:0 0 16px;${style}">${escapeHtml(text).replaceAll('\n', '<br>')}</p>`;
+	const action = content.action
+		? `<p style="margin:24px 0"><a href="${escapeHtml(content.action.url)}" style="background:#0E5A66;color:#FFFFFF;border-radius:6px;padding:12px 18px;font-weight:bold;text-decoration:none;display:inline-block">${escapeHtml(content.action.label)}</a></p>${paragraph(content.action.url, 'font-size:13px;color:#4A5D64;word-break:break-all;')}`
+		: '';
+	return `<!doctype html><html lang="en"><head><meta charset="utf-8"><meta name="viewport" content="width=device-width"><title>${escapeHtml(content.subject)}</title></head><body style="margin:0;background:#F1F5F3;padding:24px"><div style="max-width:560px;margin:0 auto;background:#FFFFFF;border:1px solid #D3DEDB;border-radius:28px 6px 6px 6px;padding:28px;font:16px/1.5 Nunito,Verdana,sans-serif;color:#14232A">${paragraph(content.greeting)}${content.paragraphs.map((text) => paragraph(text)).join('')}${action}${content.note ? paragraph(content.note, 'font-size:13px;color:#4A5D64;') : ''}${paragraph(content.from, 'margin-top:24px;color:#4A5D64;')}</div></body></html>`;
+}
