@@ -51,6 +51,7 @@ export class Guard {
 		const child = this.#child;
 		if (!child || child.exitCode !== null) return;
 		const gone = new Promise((resolve) => child.once('exit', resolve));
+		child.ref();
 		this.#send({ farewell: true });
 		child.stdin?.end();
 		await gone;
