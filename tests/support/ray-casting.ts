@@ -23,7 +23,6 @@ export function sunVec(azimuthDeg: number, altitudeDeg: number): Vec {
 	return [Math.cos(h) * Math.sin(A), Math.cos(h) * Math.cos(A), Math.sin(h)];
 }
 
-const dot = (a: Vec, b: Vec) => a[0] * b[0] + a[1] * b[1] + a[2] * b[2];
 const cross = (a: Vec, b: Vec): Vec => [
 	a[1] * b[2] - a[2] * b[1],
 	a[2] * b[0] - a[0] * b[2],
@@ -194,4 +193,4 @@ export function plainOpen(
 	return have.length / eyes.length >= plan.rule.minimumShare;
 }
 
-export { dot, type Vec };
+export { cross, type Vec };
