@@ -93,6 +93,7 @@ const curtainSchema = withSheetRules(
 const wallSchema = withSheetRules(fields(sheetShape));
 
 const outlineSchema = list(point, { least: 3, most: 500 }).superRefine((outline, context) => {
+	if (outline.length < 3) return;
 	const thin = !(polygonArea(outline) > 0) || !(spacingsAcross(outline) <= MOST_SPACINGS);
 	if (outline.length > 3 && crossesItself(outline)) {
 		context.addIssue({ code: 'custom', message: 'must not cross or touch itself' });
