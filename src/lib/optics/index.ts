@@ -1,0 +1,20 @@
+/**
+ * The optics of a site: sun, water, bow, what is seen of it, and when. Pure, the same in the browser and
+ * on the server. Angles are degrees, lengths metres, instants milliseconds since 1970 UTC.
+ */
+export { createSite, type Curtain, type Eye, type Sheet, type Site, type Zone } from './site';
+export { sunPosition, type SunPosition } from './sun';
+export { waterDensityKgM3, waterRefractiveIndex } from './water';
+export { bowRadiusDeg, descartesBow } from './bow-radius';
+export { ringDirection, ringFrame, type RingFrame } from './ring';
+export {
+	stateAt,
+	stateUnderSun,
+	sunIsUp,
+	type EyeState,
+	type SiteState,
+	type ZoneState
+} from './instant';
+export { bowTopDeg, seenArcs, type CurtainPoint, type SeenArc } from './seen-arcs';
+export { findWindows, zoneWindows, type BowWindow, type ZoneWindows } from './windows';
+export { shareOverDay, windowsInPieces, type ShareMoment, type WindowsPiece } from './series';

@@ -1,0 +1,147 @@
+import type { LocalDate } from '../schedule/local-clock';
+import { localDayRange } from '../schedule/local-days';
+import { OpenSearch, ROOT_SPAN_S } from './open-search';
+import { findPeaks } from './peaks';
+import type { Site, Zone } from './site';
+import { sunTracker } from './sun';
+import { sightOf } from './instant';
+
+/** Shorter gaps are closed, and then shorter windows dropped, seconds. */
+export const LEAST_SPAN_S = 60;
+
+/** An interval in which a zone is open to the bow. */
+export interface BowWindow {
+	/** The site's local date on which it starts, `YYYY-MM-DD`. */
+	readonly date: LocalDate;
+	/** First whole second that is open, milliseconds since 1970 UTC. */
+	readonly startMs: number;
+	/** Last whole second that is open. */
+	readonly endMs: number;
+	/** Greatest share of the zone's eyes that have the bow, 0 to 1. */
+	readonly peakShare: number;
+	/** Greatest median arc over the eyes that have the bow, degrees. */
+	readonly peakArcDeg: number;
+}
+
+/** The windows of one zone. */
+export interface ZoneWindows {
+	readonly zone: string;
+	readonly windows: readonly BowWindow[];
+}
+
+/** A window before its peaks are known, whole seconds since 1970. */
+interface Span {
+	readonly startS: number;
+	readonly endS: number;
+}
+
+/**
+ * The spans that start within [startS, endS), in order.
+ *
+ * Instants are whole seconds: a gap is as long as from the last open second before it to the first
+ * after it, a span as long as from its first open second to its last. So windows as told are 60 s or
+ * longer, and 60 s or more apart. The search begins a gap's length early, so that a span open before the
+ * first second is known for what it is and left out, and goes on past the end until what is open then has
+ * closed.
+ */
+function* openSpans(search: OpenSearch, startS: number, endS: number): Generator<Span> {
+	const from = startS - LEAST_SPAN_S;
+	let current: { startS: number; endS: number } | null = null;
+	const done: Span[] = [];
+	const close = () => {
+		if (
+			current &&
+			current.startS >= startS &&
+			current.startS < endS &&
+			current.endS - current.startS >= LEAST_SPAN_S
+		) {
+			done.push(current);
+		}
+		current = null;
+	};
+	const sink = (firstS: number, lastS: number) => {
+		const first = Math.max(firstS, from);
+		if (lastS < first) return;
+		if (current && first - current.endS < LEAST_SPAN_S) {
+			current.endS = lastS;
+			return;
+		}
+		close();
+		current = { startS: first, endS: lastS };
+	};
+	const currentSpan = (): Span | null => current;
+	let rootS = Math.floor(from / ROOT_SPAN_S) * ROOT_SPAN_S;
+	for (; ; rootS += ROOT_SPAN_S) {
+		const open = currentSpan();
+		// Past the end only a span that started before it is still followed.
+		const followed = open !== null && open.startS < endS && rootS - open.endS < LEAST_SPAN_S;
+		if (rootS >= endS && !followed) break;
+		search.search(rootS, sink);
+		yield* done.splice(0);
+	}
+	close();
+	yield* done;
+}
+
+/**
+ * The windows of one zone on a range of local dates, one after the other.
+ *
+ * A window belongs to the local date on which it starts and is followed to its end, over midnight or
+ * for weeks under a midnight sun. One that was open before the first local midnight of the range is left
+ * out, and so is one whose start bears a date outside the range.
+ *
+ * @param from first local date, @param to last, both counted, at most 1100 days
+ * @throws RangeError when the dates are wrong
+ */
+export function* zoneWindows({
+	site,
+	zone,
+	from,
+	to
+}: {
+	site: Site;
+	zone: Zone;
+	from: LocalDate;
+	to: LocalDate;
+}): Generator<BowWindow> {
+	const { startMs, endMs } = localDayRange({ timeZone: site.clock.timeZone, from, to });
+	const sunAt = sunTracker(site);
+	const sight = sightOf(site, zone);
+	const search = new OpenSearch(site, zone);
+	for (const { startS, endS } of openSpans(
+		search,
+		Math.ceil(startMs / 1000),
+		Math.ceil(endMs / 1000)
+	)) {
+		const date = site.clock.dateAt(startS * 1000);
+		if (date < from || date > to) continue;
+		yield {
+			date,
+			startMs: startS * 1000,
+			endMs: endS * 1000,
+			...findPeaks({ site, zone, sight, sunAt, startS, endS })
+		};
+	}
+}
+
+/**
+ * The windows of every zone of a site on a range of local dates.
+ * @param from first local date `YYYY-MM-DD`, @param to last, both counted, at most 1100 days
+ * @returns one entry a zone, in the plan's order
+ * @throws RangeError when the dates are wrong
+ */
+export function findWindows({
+	site,
+	from,
+	to
+}: {
+	site: Site;
+	from: LocalDate;
+	to: LocalDate;
+}): ZoneWindows[] {
+	localDayRange({ timeZone: site.clock.timeZone, from, to });
+	return site.zones.map((zone) => ({
+		zone: zone.name,
+		windows: [...zoneWindows({ site, zone, from, to })]
+	}));
+}
