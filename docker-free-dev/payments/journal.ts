@@ -7,10 +7,13 @@ import {
 	openSync,
 	readFileSync,
 	renameSync,
+	rmSync,
 	truncateSync,
+	writeFileSync,
 	writeSync
 } from 'node:fs';
 import path from 'node:path';
+import { startTicks } from '../lib/processes.ts';
 import type { Kind, Kinds } from './store.ts';
 
 /** kind, owner, id, order, value; a value of null takes the row away. */
@@ -24,9 +27,16 @@ export class Journal {
 	#file: string;
 	#fd = -1;
 
-	/** @param folder where it lies; made when missing. */
+	#holder: string;
+
+	/**
+	 * @param folder where it lies; made when missing.
+	 * @throws Error when another process that runs has it.
+	 */
 	constructor(folder: string) {
 		mkdirSync(folder, { recursive: true, mode: 0o700 });
+		this.#holder = path.join(folder, 'holder');
+		this.#hold(folder);
 		this.#file = path.join(folder, 'journal.jsonl');
 	}
 
@@ -59,7 +69,20 @@ export class Journal {
 	}
 
 	close(): void {
-		if (this.#fd >= 0) closeSync(this.#fd);
+		if (this.#fd < 0) return;
+		closeSync(this.#fd);
 		this.#fd = -1;
+		rmSync(this.#holder, { force: true });
+	}
+
+	/** Two doubles on one journal would overwrite each other. */
+	#hold(folder: string): void {
+		const [pid, ticks] = existsSync(this.#holder)
+			? readFileSync(this.#holder, 'utf8').split(' ')
+			: [];
+		if (pid && Number(pid) !== process.pid && startTicks(Number(pid)) === ticks) {
+			throw new Error(`Process ${pid} keeps its state in ${folder} already.`);
+		}
+		writeFileSync(this.#holder, `${process.pid} ${startTicks(process.pid)}`);
 	}
 }
