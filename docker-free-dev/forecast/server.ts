@@ -1,10 +1,5 @@
 import http from 'node:http';
-
-/** A double that is listening. */
-export interface RunningDouble {
-	address: string;
-	close(): Promise<void>;
-}
+import type { RunningDouble } from '../lib/http-double.ts';
 
 /** Starts the double of the forecast service on loopback. */
 export async function startForecastDouble(options: { port: number }): Promise<RunningDouble> {

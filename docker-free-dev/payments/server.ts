@@ -1,29 +1,43 @@
-import http from 'node:http';
-import type { RunningDouble } from '../forecast/server.ts';
+import { listen, sendJson, type RunningDouble } from '../lib/http-double.ts';
+import { handleAdmin } from './admin.ts';
+import { Api } from './api.ts';
+import { Engine } from './engine.ts';
+import { handlePage } from './pages/handle.ts';
 
-/** Starts the double of the payment service on loopback. */
-export async function startPaymentDouble(options: {
+export interface PaymentDoubleOptions {
+	/** 0: any free port. */
 	port: number;
+	/** Folder of the journal, which survives kills. */
 	stateDir: string;
+	/** The one key that is taken; absent: any that begins with sk_test_. */
 	secretKey?: string;
 	webhookUrl?: string;
 	webhookSecret?: string;
-}): Promise<RunningDouble> {
-	const server = http.createServer((request, response) => {
-		response.writeHead(request.url === '/_double/health' ? 200 : 404).end();
+	/** How long "later" is; three seconds unless told. */
+	laterMs?: number;
+}
+
+/** Starts the double of the payment service on loopback. */
+export async function startPaymentDouble(options: PaymentDoubleOptions): Promise<RunningDouble> {
+	const engine = new Engine({ ...options, laterMs: options.laterMs ?? 3_000 });
+	const api = new Api(engine, options.secretKey);
+	const server = await listen(options.port, async (request, response) => {
+		const { path } = request;
+		if (path.startsWith('/v1/')) return api.handle(request, response);
+		if (path.startsWith('/_double/')) return handleAdmin(engine, request, response);
+		if (handlePage(engine, request, response)) return;
+		sendJson(response, 404, { error: { message: `There is nothing at ${path}.` } });
+	}).catch(async (error: unknown) => {
+		await engine.stop();
+		throw error;
 	});
-	await new Promise<void>((resolve, reject) => {
-		server.once('error', reject);
-		server.listen(options.port, '127.0.0.1', resolve);
-	});
-	const address = server.address();
-	const port = typeof address === 'object' && address ? address.port : options.port;
+	engine.base = server.address;
+	engine.resume();
 	return {
-		address: `http://127.0.0.1:${port}`,
-		close: () =>
-			new Promise((resolve) => {
-				server.close(() => resolve());
-				server.closeAllConnections();
-			})
+		address: server.address,
+		close: async () => {
+			await server.close();
+			await engine.stop();
+		}
 	};
 }
