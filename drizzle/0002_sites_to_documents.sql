@@ -297,6 +297,7 @@ CREATE TABLE "payment" (
 	"payment_intent_id" text NOT NULL,
 	"charge_id" text NOT NULL,
 	"amount_minor" bigint NOT NULL,
+	"application_fee_minor" bigint DEFAULT 0 NOT NULL,
 	"currency" text NOT NULL,
 	"received_at" timestamp with time zone NOT NULL,
 	CONSTRAINT "payment_operator_id_id_key" UNIQUE("operator_id","id"),
@@ -397,18 +398,6 @@ CREATE TABLE "document_series" (
 );
 --> statement-breakpoint
 ALTER TABLE "document_series" ENABLE ROW LEVEL SECURITY;--> statement-breakpoint
-CREATE TABLE "letter_attachment" (
-	"id" uuid PRIMARY KEY NOT NULL,
-	"operator_id" uuid NOT NULL,
-	"letter_id" uuid NOT NULL,
-	"file_name" text NOT NULL,
-	"content_type" text NOT NULL,
-	"content_id" text,
-	"content" "bytea" NOT NULL,
-	CONSTRAINT "letter_attachment_operator_id_id_key" UNIQUE("operator_id","id")
-);
---> statement-breakpoint
-ALTER TABLE "letter_attachment" ENABLE ROW LEVEL SECURITY;--> statement-breakpoint
 CREATE TABLE "seller" (
 	"id" uuid PRIMARY KEY NOT NULL,
 	"operator_id" uuid NOT NULL,
@@ -424,6 +413,7 @@ CREATE TABLE "seller" (
 );
 --> statement-breakpoint
 ALTER TABLE "seller" ENABLE ROW LEVEL SECURITY;--> statement-breakpoint
+ALTER TABLE "letter" ADD COLUMN "enclosures" jsonb DEFAULT '[]'::jsonb NOT NULL;--> statement-breakpoint
 ALTER TABLE "bow_window" ADD CONSTRAINT "bow_window_operator_id_operator_id_fk" FOREIGN KEY ("operator_id") REFERENCES "public"."operator"("id") ON DELETE no action ON UPDATE no action;--> statement-breakpoint
 ALTER TABLE "bow_window" ADD CONSTRAINT "bow_window_computation_fk" FOREIGN KEY ("operator_id","plan_id","computation_id") REFERENCES "public"."computation"("operator_id","plan_id","id") ON DELETE no action ON UPDATE no action;--> statement-breakpoint
 ALTER TABLE "bow_window" ADD CONSTRAINT "bow_window_zone_fk" FOREIGN KEY ("operator_id","zone_id") REFERENCES "public"."zone"("operator_id","id") ON DELETE no action ON UPDATE no action;--> statement-breakpoint
@@ -479,8 +469,6 @@ ALTER TABLE "document" ADD CONSTRAINT "document_order_fk" FOREIGN KEY ("operator
 ALTER TABLE "document" ADD CONSTRAINT "document_original_fk" FOREIGN KEY ("operator_id","original_id") REFERENCES "public"."document"("operator_id","id") ON DELETE no action ON UPDATE no action;--> statement-breakpoint
 ALTER TABLE "document" ADD CONSTRAINT "document_refund_fk" FOREIGN KEY ("operator_id","refund_id") REFERENCES "public"."refund"("operator_id","id") ON DELETE no action ON UPDATE no action;--> statement-breakpoint
 ALTER TABLE "document_series" ADD CONSTRAINT "document_series_operator_id_operator_id_fk" FOREIGN KEY ("operator_id") REFERENCES "public"."operator"("id") ON DELETE no action ON UPDATE no action;--> statement-breakpoint
-ALTER TABLE "letter_attachment" ADD CONSTRAINT "letter_attachment_operator_id_operator_id_fk" FOREIGN KEY ("operator_id") REFERENCES "public"."operator"("id") ON DELETE no action ON UPDATE no action;--> statement-breakpoint
-ALTER TABLE "letter_attachment" ADD CONSTRAINT "letter_attachment_letter_fk" FOREIGN KEY ("operator_id","letter_id") REFERENCES "public"."letter"("operator_id","id") ON DELETE no action ON UPDATE no action;--> statement-breakpoint
 ALTER TABLE "seller" ADD CONSTRAINT "seller_operator_id_operator_id_fk" FOREIGN KEY ("operator_id") REFERENCES "public"."operator"("id") ON DELETE no action ON UPDATE no action;--> statement-breakpoint
 CREATE INDEX "bow_window_zone_index" ON "bow_window" USING btree ("operator_id","zone_id","local_date");--> statement-breakpoint
 CREATE INDEX "bow_window_computation_index" ON "bow_window" USING btree ("operator_id","computation_id","local_date");--> statement-breakpoint
@@ -500,7 +488,6 @@ CREATE UNIQUE INDEX "refund_call_off_key" ON "refund" USING btree ("operator_id"
 CREATE INDEX "refund_weather_call_index" ON "refund" USING btree ("operator_id","weather_call_id");--> statement-breakpoint
 CREATE UNIQUE INDEX "refund_retry_key" ON "refund" USING btree ("operator_id","retry_of");--> statement-breakpoint
 CREATE INDEX "document_order_index" ON "document" USING btree ("operator_id","order_id");--> statement-breakpoint
-CREATE INDEX "letter_attachment_letter_index" ON "letter_attachment" USING btree ("operator_id","letter_id");--> statement-breakpoint
 CREATE POLICY "bow_window_tenant" ON "bow_window" AS PERMISSIVE FOR ALL TO "bowkeeper_app" USING (operator_id = nullif(current_setting('app.operator_id', true), '')::uuid) WITH CHECK (operator_id = nullif(current_setting('app.operator_id', true), '')::uuid);--> statement-breakpoint
 CREATE POLICY "computation_tenant" ON "computation" AS PERMISSIVE FOR ALL TO "bowkeeper_app" USING (operator_id = nullif(current_setting('app.operator_id', true), '')::uuid) WITH CHECK (operator_id = nullif(current_setting('app.operator_id', true), '')::uuid);--> statement-breakpoint
 CREATE POLICY "picture_tenant" ON "picture" AS PERMISSIVE FOR ALL TO "bowkeeper_app" USING (operator_id = nullif(current_setting('app.operator_id', true), '')::uuid) WITH CHECK (operator_id = nullif(current_setting('app.operator_id', true), '')::uuid);--> statement-breakpoint
@@ -524,5 +511,4 @@ CREATE POLICY "payment_event_tenant" ON "payment_event" AS PERMISSIVE FOR ALL TO
 CREATE POLICY "refund_tenant" ON "refund" AS PERMISSIVE FOR ALL TO "bowkeeper_app" USING (operator_id = nullif(current_setting('app.operator_id', true), '')::uuid) WITH CHECK (operator_id = nullif(current_setting('app.operator_id', true), '')::uuid);--> statement-breakpoint
 CREATE POLICY "document_tenant" ON "document" AS PERMISSIVE FOR ALL TO "bowkeeper_app" USING (operator_id = nullif(current_setting('app.operator_id', true), '')::uuid) WITH CHECK (operator_id = nullif(current_setting('app.operator_id', true), '')::uuid);--> statement-breakpoint
 CREATE POLICY "document_series_tenant" ON "document_series" AS PERMISSIVE FOR ALL TO "bowkeeper_app" USING (operator_id = nullif(current_setting('app.operator_id', true), '')::uuid) WITH CHECK (operator_id = nullif(current_setting('app.operator_id', true), '')::uuid);--> statement-breakpoint
-CREATE POLICY "letter_attachment_tenant" ON "letter_attachment" AS PERMISSIVE FOR ALL TO "bowkeeper_app" USING (operator_id = nullif(current_setting('app.operator_id', true), '')::uuid) WITH CHECK (operator_id = nullif(current_setting('app.operator_id', true), '')::uuid);--> statement-breakpoint
 CREATE POLICY "seller_tenant" ON "seller" AS PERMISSIVE FOR ALL TO "bowkeeper_app" USING (operator_id = nullif(current_setting('app.operator_id', true), '')::uuid) WITH CHECK (operator_id = nullif(current_setting('app.operator_id', true), '')::uuid);

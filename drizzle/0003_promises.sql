@@ -6,7 +6,7 @@ ALTER TABLE slot ADD CONSTRAINT slot_no_overlap EXCLUDE USING gist (
 ) WHERE (status <> 'called_off');--> statement-breakpoint
 -- Written once: no change, no deletion.
 REVOKE UPDATE, DELETE ON bow_window, payment, ledger_entry, document FROM bowkeeper_app;--> statement-breakpoint
-REVOKE DELETE ON plan, zone, computation, slot, "order", order_line, ticket, refund, payment_event,
+REVOKE DELETE ON plan, zone, computation, "order", order_line, ticket, refund, payment_event,
 	weather_call, weather_call_slot, document_series FROM bowkeeper_app;--> statement-breakpoint
 REVOKE UPDATE ON order_line, weather_call, weather_call_slot FROM bowkeeper_app;--> statement-breakpoint
 

@@ -11,8 +11,7 @@ import {
 	unique,
 	uuid
 } from 'drizzle-orm/pg-core';
-import { amountMinor, bytes, createdAt, id, tenantPolicy } from './columns';
-import { letter } from './letters';
+import { amountMinor, createdAt, id, tenantPolicy } from './columns';
 import { operator } from './operators';
 import { order } from './orders';
 import { refund } from './payments';
@@ -152,32 +151,5 @@ export const document = pgTable(
 		check('document_sum', sql`gross_minor = net_minor + tax_minor`),
 		check('document_original', sql`(kind = 'credit_note') = (original_id is not null)`),
 		tenantPolicy('document')
-	]
-);
-
-/** A file that goes with a letter. */
-export const letterAttachment = pgTable(
-	'letter_attachment',
-	{
-		id: id(),
-		operatorId: uuid('operator_id')
-			.notNull()
-			.references(() => operator.id),
-		letterId: uuid('letter_id').notNull(),
-		fileName: text('file_name').notNull(),
-		contentType: text('content_type').notNull(),
-		/** Set for a picture that the letter's HTML shows in place (RFC 2392). */
-		contentId: text('content_id'),
-		content: bytes('content').notNull()
-	},
-	(t) => [
-		unique('letter_attachment_operator_id_id_key').on(t.operatorId, t.id),
-		index('letter_attachment_letter_index').on(t.operatorId, t.letterId),
-		foreignKey({
-			name: 'letter_attachment_letter_fk',
-			columns: [t.operatorId, t.letterId],
-			foreignColumns: [letter.operatorId, letter.id]
-		}),
-		tenantPolicy('letter_attachment')
 	]
 );

@@ -67,6 +67,8 @@ export const payment = pgTable(
 		paymentIntentId: text('payment_intent_id').notNull(),
 		chargeId: text('charge_id').notNull(),
 		amountMinor: amountMinor('amount_minor').notNull(),
+		/** The platform's part, given back in proportion with a refund. */
+		applicationFeeMinor: amountMinor('application_fee_minor').notNull().default(0),
 		currency: text('currency').notNull(),
 		receivedAt: instant('received_at').notNull()
 	},
