@@ -1,5 +1,5 @@
 import { and, eq, inArray, lt } from 'drizzle-orm';
-import { order, orderLine, priceCategory, slot } from '../db/schema';
+import { order, orderLine, priceCategory } from '../db/schema';
 import { databaseFault, violates } from '../db/errors';
 import type { TenantTx } from '../db/transaction';
 import { Refusal } from '../failures';
@@ -156,11 +156,4 @@ async function releaseLapsedHolds(tx: TenantTx, slotId: string, now: Date): Prom
 				lapsed.map(({ id }) => id)
 			)
 		);
-}
-
-/** Places left in a slot, for showing: lapsed holds may still be counted until they are released. */
-export function placesLeft(
-	row: Pick<typeof slot.$inferSelect, 'capacity' | 'held' | 'sold'>
-): number {
-	return Math.max(0, row.capacity - row.held - row.sold);
 }

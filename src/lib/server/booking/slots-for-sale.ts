@@ -1,5 +1,5 @@
 import { and, asc, eq, gt, gte, lte } from 'drizzle-orm';
-import { bowWindow, priceCategory, programme, site, slot, zone } from '../db/schema';
+import { priceCategory, programme, site, slot, zone } from '../db/schema';
 import type { TenantTx } from '../db/transaction';
 
 const columns = {
@@ -14,8 +14,11 @@ const columns = {
 	capacity: slot.capacity,
 	held: slot.held,
 	sold: slot.sold,
-	peakShare: bowWindow.peakShare,
-	peakArcDeg: bowWindow.peakArcDeg,
+	arcDeg: slot.arcDeg,
+	share: slot.share,
+	sunAltitudeDeg: slot.sunAltitudeDeg,
+	lookAzimuthDeg: slot.lookAzimuthDeg,
+	dropDiameterUm: slot.dropDiameterUm,
 	currency: site.currency
 };
 
@@ -25,7 +28,6 @@ function query(tx: TenantTx) {
 		.from(slot)
 		.innerJoin(site, eq(site.id, slot.siteId))
 		.innerJoin(zone, eq(zone.id, slot.zoneId))
-		.innerJoin(bowWindow, eq(bowWindow.id, slot.windowId))
 		.$dynamic();
 }
 
@@ -116,4 +118,11 @@ export async function readRefundPolicy(tx: TenantTx, programmeId: string) {
 		where: and(eq(programme.operatorId, tx.operatorId), eq(programme.id, programmeId))
 	});
 	return found?.refundPolicy ?? { untilHoursBefore: 0, percent: 0 };
+}
+
+/** Places left in a slot, for showing: lapsed holds may still be counted until they are released. */
+export function placesLeft(
+	row: Pick<typeof slot.$inferSelect, 'capacity' | 'held' | 'sold'>
+): number {
+	return Math.max(0, row.capacity - row.held - row.sold);
 }

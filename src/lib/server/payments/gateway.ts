@@ -121,6 +121,10 @@ export interface Checkout {
 	payment: ReceivedPayment | null;
 }
 
+function statusOf(status: string | null): Checkout['status'] {
+	return status === 'complete' || status === 'expired' ? status : 'open';
+}
+
 /** What has become of a checkout session. */
 export async function readCheckout(accountId: string, sessionId: string): Promise<Checkout> {
 	const session = await ask(
@@ -134,7 +138,7 @@ export async function readCheckout(accountId: string, sessionId: string): Promis
 	const charge = typeof intent === 'object' && intent ? intent.latest_charge : null;
 	const paid = session.payment_status === 'paid' && typeof intent === 'object' && intent;
 	return {
-		status: session.status === 'complete' || session.status === 'expired' ? session.status : 'open',
+		status: statusOf(session.status),
 		orderId: session.client_reference_id,
 		payment:
 			paid && typeof charge === 'object' && charge
