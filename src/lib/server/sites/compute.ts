@@ -6,6 +6,7 @@ import { demand } from '../auth/rights';
 import { bowWindow, computation, plan, zone } from '../db/schema';
 import { inTenant, type TenantTx } from '../db/transaction';
 import { Refusal } from '../failures';
+import { isUuid } from '../../ids';
 import { addJob } from '../jobs/add';
 import type { Attempt, TaskPayloads } from '../jobs/tasks';
 import { livePlan } from './sites';
@@ -175,6 +176,18 @@ async function computePieces(
 			.set({ state: 'done', finishedAt: new Date() })
 			.where(eq(computation.id, run.id))
 	);
+}
+
+/** One computation. @throws Refusal (not_found) */
+export async function demandComputation(tx: TenantTx, id: string): Promise<Computation> {
+	demand(tx, 'sites.read');
+	const found = isUuid(id)
+		? await tx.sql.query.computation.findFirst({
+				where: and(eq(computation.operatorId, tx.operatorId), eq(computation.id, id))
+			})
+		: undefined;
+	if (!found) throw new Refusal('not_found', 'There is no such computation.');
+	return found;
 }
 
 /** Computations of a site's live plan, newest first, with how many windows each has found. */
