@@ -13,6 +13,7 @@ export async function startSmtpServer(port = 0) {
 	let mood: SmtpMood = 'take';
 	let hanging: () => void = () => {};
 	let onHang = new Promise<void>((resolve) => (hanging = resolve));
+	let answerLate: () => void = () => {};
 	const server = net.createServer((socket) => {
 		sockets.add(socket);
 		socket.on('close', () => sockets.delete(socket));
@@ -20,6 +21,11 @@ export async function startSmtpServer(port = 0) {
 		let rest = '';
 		let letter: string[] | undefined;
 		const say = (line: string) => socket.write(`${line}\r\n`);
+		const take = () => {
+			taken.push(Buffer.from((letter ?? []).join('\r\n'), 'latin1').toString('utf8'));
+			letter = undefined;
+			say('250 taken');
+		};
 		say('220 mail.example.org ready');
 		socket.on('data', (chunk: Buffer) => {
 			const lines = (rest + chunk.toString('latin1')).split('\r\n');
@@ -27,12 +33,10 @@ export async function startSmtpServer(port = 0) {
 			for (const line of lines) {
 				if (letter) {
 					if (line !== '.') letter.push(line);
-					else if (mood === 'hang') hanging();
-					else {
-						taken.push(Buffer.from(letter.join('\r\n'), 'latin1').toString('utf8'));
-						letter = undefined;
-						say('250 taken');
-					}
+					else if (mood === 'hang') {
+						answerLate = take;
+						hanging();
+					} else take();
 				} else if (/^(EHLO|HELO)/.test(line)) say('250 mail.example.org');
 				else if (line.startsWith('RCPT') && mood === 'refuse') {
 					say(`451 4.3.0 ${line.slice('RCPT TO:'.length)} is not taken now`);
@@ -65,6 +69,8 @@ export async function startSmtpServer(port = 0) {
 		get hung() {
 			return onHang;
 		},
+		/** Answers the letter that was left without an answer last. */
+		answerLate: () => answerLate(),
 		close: () =>
 			new Promise<void>((resolve) => {
 				for (const socket of sockets) socket.destroy();
