@@ -11,6 +11,7 @@ import { sequence } from '@sveltejs/kit/hooks';
 import { randomUUID } from 'node:crypto';
 import { sessionCookieName } from '$lib/server/auth/lucia';
 import { readSession } from '$lib/server/auth/sessions';
+import { problemResponse } from '$lib/server/api';
 import { closePool } from '$lib/server/db/client';
 import { inPerson } from '$lib/server/db/transaction';
 import { env } from '$lib/server/env';
@@ -139,8 +140,11 @@ const identify: Handle = async ({ event, resolve }) => {
 /** The one place where a /desk address is opened: to members, with the steps their operator wants. */
 const guardDesk: Handle = async ({ event, resolve }) => {
 	const slug = event.params['operator'];
-	if (!event.route.id?.startsWith('/desk/[operator]') || slug === undefined) return resolve(event);
+	const isApi = event.route.id?.startsWith('/api/v1/desk/[operator]') ?? false;
+	const isDesk = isApi || event.route.id?.startsWith('/desk/[operator]');
+	if (!isDesk || slug === undefined) return resolve(event);
 	const { user, requestId } = event.locals;
+	if (!user && isApi) return problemResponse(event, 401, 'Sign in first.');
 	if (!user) {
 		const page = event.locals.halfSignedIn ? '/sign-in/second-step' : '/sign-in';
 		redirect(303, `${page}?back=${encodeURIComponent(event.url.pathname)}`);

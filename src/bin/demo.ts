@@ -3,7 +3,7 @@ import { chmod, writeFile } from 'node:fs/promises';
 import { closePool } from '../lib/server/db/client';
 import { user } from '../lib/server/db/schema';
 import { inPublic } from '../lib/server/db/transaction';
-import { makeDemoPeople } from '../lib/server/demo/people';
+import { makeDemo } from '../lib/server/demo/make';
 
 /** Fills an empty database with the demo, once; DEMO_FILE gets the sign-ins. */
 const file = process.env.DEMO_FILE;
@@ -14,7 +14,7 @@ if (!file) {
 const nobody = { actor: { kind: 'platform', userId: null, name: 'demo' } } as const;
 const isEmpty = await inPublic(nobody, async (tx) => (await tx.sql.$count(user)) === 0);
 if (isEmpty) {
-	const { signIns, owner } = await makeDemoPeople();
+	const { signIns, owner } = await makeDemo(new Date());
 	// The demo's owner also sees the platform pages, so that they can be looked at.
 	await inPublic(nobody, (tx) =>
 		tx.sql.update(user).set({ platformAdmin: true }).where(eq(user.id, owner.userId))

@@ -17,4 +17,5 @@ export {
 } from './instant';
 export { bowTopDeg, seenArcs, type CurtainPoint, type SeenArc } from './seen-arcs';
 export { findWindows, zoneWindows, type BowWindow, type ZoneWindows } from './windows';
+export { daylight } from './daylight';
 export { shareOverDay, windowsInPieces, type ShareMoment, type WindowsPiece } from './series';

@@ -12,7 +12,9 @@ const rules = {
 	/** Letters that a stranger can cause to one mailbox. */
 	letterAccount: { points: 5, seconds: 60 * 60 },
 	/** Letters that a stranger can cause from one address. */
-	letterAddress: { points: 40, seconds: 60 * 60 }
+	letterAddress: { points: 40, seconds: 60 * 60 },
+	/** Holds of places from one address: nobody keeps a season's places by holding them. */
+	reserveAddress: { points: 40, seconds: 15 * 60 }
 } as const;
 
 export type LimitRule = keyof typeof rules;

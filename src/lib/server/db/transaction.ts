@@ -35,6 +35,7 @@ interface Settings {
 	userId?: string;
 	platform?: boolean;
 	operatorSlug?: string;
+	paymentAccount?: string;
 }
 
 function beginWith(settings: Settings): string {
@@ -42,7 +43,8 @@ function beginWith(settings: Settings): string {
 		['app.operator_id', settings.operatorId ?? ''],
 		['app.user_id', settings.userId ?? ''],
 		['app.platform', settings.platform ? 'on' : ''],
-		['app.operator_slug', settings.operatorSlug ?? '']
+		['app.operator_slug', settings.operatorSlug ?? ''],
+		['app.payment_account', settings.paymentAccount ?? '']
 	];
 	// One message: begin and settings travel together (the simple protocol takes no parameters).
 	const list = values.map(
@@ -52,7 +54,7 @@ function beginWith(settings: Settings): string {
 }
 
 /**
- * Opens a transaction with row-level security set for it and nothing else: all four settings are
+ * Opens a transaction with row-level security set for it and nothing else: all settings are
  * written each time, local to the transaction, so that pooled connections carry nothing over.
  */
 async function open<T>(settings: Settings, run: (sql: Sql) => Promise<T>): Promise<T> {
@@ -127,5 +129,16 @@ export function findOperatorBySlug(
 			where: (operator, { eq }) => eq(operator.slug, slug)
 		});
 		return row ?? null;
+	});
+}
+
+/** The operator whose account at the payment service has this name, or null. */
+export function findOperatorByPaymentAccount(accountId: string): Promise<string | null> {
+	return open({ paymentAccount: accountId }, async (sql) => {
+		const row = await sql.query.paymentAccount.findFirst({
+			columns: { operatorId: true },
+			where: (account, { eq }) => eq(account.accountId, accountId)
+		});
+		return row?.operatorId ?? null;
 	});
 }

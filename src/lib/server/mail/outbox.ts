@@ -1,5 +1,6 @@
 import { v7 as uuidv7 } from 'uuid';
 import { letter } from '../db/schema';
+import type { Enclosure } from '../db/schema/letters';
 import type { PlainTx, TenantTx } from '../db/transaction';
 import { env } from '../env';
 import { addJob } from '../jobs/add';
@@ -12,6 +13,7 @@ export interface NewLetter {
 	content: LetterContent;
 	/** The letter holds a link that grants a right: its body is wiped once it is sent. */
 	wipeWhenSent?: boolean;
+	enclosures?: Enclosure[];
 }
 
 /**
@@ -30,7 +32,8 @@ export async function writeLetter(tx: TenantTx | PlainTx, mail: NewLetter): Prom
 		bodyText: letterText(mail.content),
 		bodyHtml: letterHtml(mail.content),
 		messageId: `<${letterId}@${new URL(env().ORIGIN).hostname}>`,
-		wipeWhenSent: mail.wipeWhenSent ?? false
+		wipeWhenSent: mail.wipeWhenSent ?? false,
+		enclosures: mail.enclosures ?? []
 	});
 	await addJob(tx, 'send_letter', { letterId, operatorId: tx.operatorId }, { key: letterId });
 	return letterId;

@@ -3,6 +3,7 @@ import { createTransport, type Transporter } from 'nodemailer';
 import { letter } from '../db/schema';
 import { inPublic, inTenant, type PlainTx, type TenantTx } from '../db/transaction';
 import { env } from '../env';
+import { drawUp } from './enclosures';
 import type { Attempt, TaskPayloads } from '../jobs/tasks';
 
 let transport: Transporter | undefined;
@@ -35,9 +36,11 @@ export async function sendLetter(
 	{ letterId, operatorId }: TaskPayloads['send_letter'],
 	attempt: Attempt
 ): Promise<void> {
-	const found = await inLetterScope(operatorId, (tx) =>
-		tx.sql.query.letter.findFirst({ where: eq(letter.id, letterId) })
-	);
+	const { found, attachments } = await inLetterScope(operatorId, async (tx) => {
+		const found = await tx.sql.query.letter.findFirst({ where: eq(letter.id, letterId) });
+		const enclosures = found?.status === 'sent' ? [] : (found?.enclosures ?? []);
+		return { found, attachments: tx.operatorId === null ? [] : await drawUp(tx, enclosures) };
+	});
 	if (!found || found.status === 'sent') return;
 	try {
 		await mailer().sendMail({
@@ -46,6 +49,7 @@ export async function sendLetter(
 			subject: found.subject,
 			text: found.bodyText,
 			html: found.bodyHtml,
+			attachments,
 			messageId: found.messageId,
 			headers: { 'Auto-Submitted': 'auto-generated' }
 		});

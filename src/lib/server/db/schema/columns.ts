@@ -1,5 +1,5 @@
 import { sql } from 'drizzle-orm';
-import { pgPolicy, pgRole, timestamp, uuid } from 'drizzle-orm/pg-core';
+import { bigint, customType, pgPolicy, pgRole, timestamp, uuid } from 'drizzle-orm/pg-core';
 import { v7 as uuidv7 } from 'uuid';
 
 /** The role of the web server and the worker: owns nothing, does not bypass row-level security. */
@@ -22,6 +22,12 @@ export const id = () =>
 
 /** A moment in time, stored as an instant. */
 export const instant = (name: string) => timestamp(name, { withTimezone: true, mode: 'date' });
+
+/** An amount of money in whole minor units of the row's currency (ISO 4217). */
+export const amountMinor = (name: string) => bigint(name, { mode: 'number' });
+
+/** Bytes. */
+export const bytes = customType<{ data: Buffer }>({ dataType: () => 'bytea' });
 
 export const createdAt = () => instant('created_at').notNull().defaultNow();
 

@@ -1,6 +1,13 @@
-import { boolean, index, integer, pgTable, text, unique, uuid } from 'drizzle-orm/pg-core';
+import { boolean, index, integer, jsonb, pgTable, text, unique, uuid } from 'drizzle-orm/pg-core';
 import { createdAt, id, instant, tenantOrPlatformPolicy } from './columns';
 import { operator } from './operators';
+
+/** What goes with a letter; it is drawn up from the rows it names when the letter is sent. */
+export type Enclosure =
+	/** A numbered document as PDF. */
+	| { kind: 'document'; documentId: string }
+	/** The QR pictures of an order's tickets, shown in the letter, and the calendar entry. */
+	| { kind: 'tickets'; orderId: string };
 
 /**
  * The outbox: a letter is written in the transaction that causes it and sent by a job afterwards.
@@ -17,6 +24,7 @@ export const letter = pgTable(
 		subject: text('subject').notNull(),
 		bodyText: text('body_text').notNull(),
 		bodyHtml: text('body_html').notNull(),
+		enclosures: jsonb('enclosures').$type<Enclosure[]>().notNull().default([]),
 		/** Same at every try, so that a repeat is recognisable (RFC 5322). */
 		messageId: text('message_id').notNull(),
 		/** The body holds a link that grants a right: it is wiped once sent. */

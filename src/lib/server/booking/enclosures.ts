@@ -1,0 +1,63 @@
+import ical, { ICalCalendarMethod, ICalEventStatus } from 'ical-generator';
+import { and, eq } from 'drizzle-orm';
+import QRCode from 'qrcode';
+import { order, site, slot, zone } from '../db/schema';
+import type { TenantTx } from '../db/transaction';
+import { env } from '../env';
+import { readOperator } from '../operators/operators';
+import { visitorPath } from './visitor-key';
+
+/** A ticket's code as a QR picture. */
+export function ticketQrPng(code: string): Promise<Buffer> {
+	return QRCode.toBuffer(code, { errorCorrectionLevel: 'M', margin: 2, scale: 8 });
+}
+
+/** A ticket's code as a QR drawing for pages: an SVG path on white, whatever the page's colours. */
+export function ticketQrSvg(code: string): Promise<string> {
+	return QRCode.toString(code, { type: 'svg', errorCorrectionLevel: 'M', margin: 2 });
+}
+
+/** The calendar entry of an order (RFC 5545), times in UTC; called off when the order is. */
+export async function orderCalendar(tx: TenantTx, orderId: string): Promise<string | null> {
+	const [found] = await tx.sql
+		.select({
+			status: order.status,
+			reference: order.reference,
+			places: order.places,
+			startsAt: slot.startsAt,
+			endsAt: slot.endsAt,
+			zone: zone.name,
+			site: site.name,
+			latitudeDeg: site.latitudeDeg,
+			longitudeDeg: site.longitudeDeg,
+			changedAt: order.createdAt
+		})
+		.from(order)
+		.innerJoin(slot, eq(slot.id, order.slotId))
+		.innerJoin(zone, eq(zone.id, slot.zoneId))
+		.innerJoin(site, eq(site.id, slot.siteId))
+		.where(and(eq(order.operatorId, tx.operatorId), eq(order.id, orderId)));
+	if (!found) return null;
+	const operator = await readOperator(tx);
+	const live = found.status === 'paid';
+	const calendar = ical({
+		prodId: { company: 'Bowkeeper', product: 'Bowkeeper' },
+		method: live ? ICalCalendarMethod.PUBLISH : ICalCalendarMethod.CANCEL
+	});
+	calendar.createEvent({
+		id: `${orderId}@${new URL(env().ORIGIN).hostname}`,
+		sequence: live ? 0 : 1,
+		stamp: found.changedAt,
+		start: found.startsAt,
+		end: found.endsAt,
+		summary: `${found.site}, ${found.zone}`,
+		description: `Order ${found.reference}`,
+		location: {
+			title: found.site,
+			geo: { lat: found.latitudeDeg, lon: found.longitudeDeg }
+		},
+		url: env().ORIGIN + visitorPath(operator, orderId),
+		status: live ? ICalEventStatus.CONFIRMED : ICalEventStatus.CANCELLED
+	});
+	return calendar.toString();
+}

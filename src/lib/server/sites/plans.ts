@@ -1,0 +1,204 @@
+import { and, desc, eq, max } from 'drizzle-orm';
+import { readPlan, type Plan } from '../../schemas/plan';
+import { addToTrail } from '../audit/trail';
+import { demand } from '../auth/rights';
+import { plan, site, zone } from '../db/schema';
+import type { TenantTx } from '../db/transaction';
+import { Refusal } from '../failures';
+import { demandSite, type Site } from './sites';
+
+export type PlanVersion = typeof plan.$inferSelect;
+
+/** A plan with nothing drawn yet, at the site's place. */
+export function emptyPlan(at: Site): Plan {
+	return withPlace(
+		{
+			name: at.name,
+			latitude: 0,
+			longitude: 0,
+			elevation: 0,
+			timeZone: 'UTC',
+			skyline: [],
+			curtains: [],
+			walls: [],
+			zones: [],
+			rule: { minimumArc: 45, minimumShare: 0.7, minimumSunAltitude: 3 }
+		},
+		at
+	);
+}
+
+/** The site says where a plan lies, whatever the file says. */
+function withPlace(body: Plan, at: Site): Plan {
+	return {
+		...body,
+		latitude: at.latitudeDeg,
+		longitude: at.longitudeDeg,
+		elevation: at.elevationM,
+		timeZone: at.timeZone
+	};
+}
+
+/** A body that the engine would refuse is not stored. @throws Refusal with the faults */
+function checked(body: Plan): Plan {
+	const read = readPlan(body);
+	if (!read.ok) {
+		const [first, ...others] = read.faults;
+		const more = others.length > 0 ? ` (and ${others.length} more)` : '';
+		throw new Refusal('invalid', `${first?.path}: ${first?.message}${more}`);
+	}
+	const names = read.plan.zones.map((z, i) => z.name ?? `Zone ${i + 1}`);
+	const twice = names.find((name, i) => names.indexOf(name) !== i);
+	if (twice !== undefined) {
+		throw new Refusal('invalid', `Two zones are called ${twice}: slots are sold by zone name.`);
+	}
+	return read.plan;
+}
+
+/** A site's plan versions, newest first. */
+export function listPlans(tx: TenantTx, siteId: string) {
+	demand(tx, 'sites.read');
+	return tx.sql
+		.select({
+			id: plan.id,
+			version: plan.version,
+			state: plan.state,
+			liveSince: plan.liveSince,
+			changedAt: plan.changedAt
+		})
+		.from(plan)
+		.where(and(eq(plan.operatorId, tx.operatorId), eq(plan.siteId, siteId)))
+		.orderBy(desc(plan.version));
+}
+
+/** One version of a site's plan. @throws Refusal (not_found) */
+export async function demandPlan(
+	tx: TenantTx,
+	siteId: string,
+	version: number
+): Promise<PlanVersion> {
+	demand(tx, 'sites.read');
+	const found = Number.isSafeInteger(version)
+		? await tx.sql.query.plan.findFirst({
+				where: and(
+					eq(plan.operatorId, tx.operatorId),
+					eq(plan.siteId, siteId),
+					eq(plan.version, version)
+				)
+			})
+		: undefined;
+	if (!found) throw new Refusal('not_found', 'There is no such plan version.');
+	return found;
+}
+
+/** Makes a new version: empty, a copy, or from a file. @returns its number */
+export async function addPlan(tx: TenantTx, slug: string, body: Plan | null): Promise<number> {
+	demand(tx, 'sites.write');
+	const at = await demandSite(tx, slug);
+	// One at a time: the site's row is the lock for the next number.
+	await tx.sql.select({ id: site.id }).from(site).where(eq(site.id, at.id)).for('update');
+	const [last] = await tx.sql
+		.select({ version: max(plan.version) })
+		.from(plan)
+		.where(and(eq(plan.operatorId, tx.operatorId), eq(plan.siteId, at.id)));
+	const version = (last?.version ?? 0) + 1;
+	const [made] = await tx.sql
+		.insert(plan)
+		.values({
+			operatorId: tx.operatorId,
+			siteId: at.id,
+			version,
+			body: checked(body ? withPlace(body, at) : emptyPlan(at))
+		})
+		.returning({ id: plan.id });
+	await addToTrail(tx, {
+		action: 'plan.added',
+		subject: { type: 'plan', id: made!.id },
+		after: { site: at.slug, version }
+	});
+	return version;
+}
+
+/**
+ * Saves a draft.
+ * @param revision the count of saves that the editor started from
+ * @throws Refusal when somebody else saved since, or the version was ever live
+ */
+export async function savePlan(
+	tx: TenantTx,
+	{ slug, version, revision, body }: { slug: string; version: number; revision: number; body: Plan }
+): Promise<void> {
+	demand(tx, 'sites.write');
+	const at = await demandSite(tx, slug);
+	const found = await demandPlan(tx, at.id, version);
+	if (found.liveSince) {
+		throw new Refusal('conflict', 'A version that was live does not change. Copy it to a new one.');
+	}
+	const saved = await tx.sql
+		.update(plan)
+		.set({
+			body: checked(withPlace(body, at)),
+			revision: found.revision + 1,
+			changedAt: new Date()
+		})
+		.where(and(eq(plan.id, found.id), eq(plan.revision, revision)))
+		.returning({ id: plan.id });
+	if (saved.length === 0) {
+		throw new Refusal(
+			'conflict',
+			'Somebody else has saved this version since you opened it. Save yours as a new version, or open theirs.'
+		);
+	}
+	await addToTrail(tx, {
+		action: 'plan.saved',
+		subject: { type: 'plan', id: found.id },
+		before: { revision },
+		after: { revision: revision + 1 }
+	});
+}
+
+/**
+ * Makes a version the live one; the one before is retired. Slots stay as they are: those that no
+ * longer lie in a window are shown when the programme is published again.
+ */
+export async function makeLive(tx: TenantTx, slug: string, version: number): Promise<void> {
+	demand(tx, 'sites.write');
+	const at = await demandSite(tx, slug);
+	await tx.sql.select({ id: site.id }).from(site).where(eq(site.id, at.id)).for('update');
+	const found = await demandPlan(tx, at.id, version);
+	if (found.state === 'live') return;
+	const { body } = found;
+	if (body.zones.length === 0) throw new Refusal('conflict', 'The plan has no zone to stand in.');
+	if (!body.curtains.some((curtain) => curtain.enabled ?? true)) {
+		throw new Refusal('conflict', 'The plan has no curtain that is switched on.');
+	}
+	const moved = [at.latitudeDeg, at.longitudeDeg, at.elevationM, at.timeZone].some(
+		(value, i) => value !== [body.latitude, body.longitude, body.elevation, body.timeZone][i]
+	);
+	if (moved) {
+		throw new Refusal('conflict', 'The site’s place was changed since. Save the plan again first.');
+	}
+	await tx.sql
+		.update(plan)
+		.set({ state: 'retired' })
+		.where(and(eq(plan.operatorId, tx.operatorId), eq(plan.siteId, at.id), eq(plan.state, 'live')));
+	await tx.sql
+		.update(plan)
+		.set({ state: 'live', liveSince: found.liveSince ?? new Date() })
+		.where(eq(plan.id, found.id));
+	await tx.sql
+		.insert(zone)
+		.values(
+			body.zones.map((z, i) => ({
+				operatorId: tx.operatorId,
+				siteId: at.id,
+				name: z.name ?? `Zone ${i + 1}`
+			}))
+		)
+		.onConflictDoNothing();
+	await addToTrail(tx, {
+		action: 'plan.made_live',
+		subject: { type: 'plan', id: found.id },
+		after: { site: at.slug, version }
+	});
+}

@@ -1,0 +1,75 @@
+import { error } from '@sveltejs/kit';
+import { dayBand } from '$lib/day-band';
+import { addDays, localClock } from '$lib/schedule';
+import {
+	findOpenSite,
+	listPrices,
+	listSlotsForSale,
+	placesLeft
+} from '$lib/server/booking/slots-for-sale';
+import { windowsOfSite } from '$lib/server/sites/compute';
+import { asVisitor } from '$lib/server/visitor';
+import type { PageServerLoad } from './$types';
+
+/** Days that one page lists. */
+const pageDays = 7;
+
+export const load: PageServerLoad = async (event) =>
+	asVisitor(event, async (tx) => {
+		const site = await findOpenSite(tx, event.params.site);
+		if (!site) error(404, 'There is nothing at this address.');
+		const now = new Date();
+		const today = localClock(site.timeZone).dateAt(now.getTime());
+		const asked = event.url.searchParams.get('from') ?? '';
+		const from = /^\d{4}-\d{2}-\d{2}$/.test(asked) && asked > today ? asked : today;
+		const slots = await listSlotsForSale(tx, {
+			siteId: site.id,
+			now,
+			from,
+			until: addDays(from, 400)
+		});
+		// The next days that have anything, so that nobody pages through a closed month.
+		const dates = [...new Set(slots.map(({ localDate }) => localDate))];
+		const shown = dates.slice(0, pageDays);
+		const windows =
+			shown.length > 0
+				? await windowsOfSite(tx, site.id, { from: shown[0]!, to: shown.at(-1)! })
+				: [];
+		const prices = new Map<string, Awaited<ReturnType<typeof listPrices>>>();
+		for (const { programmeId } of slots) {
+			if (!prices.has(programmeId)) prices.set(programmeId, await listPrices(tx, programmeId));
+		}
+		return {
+			site: {
+				slug: site.slug,
+				name: site.name,
+				description: site.description,
+				arrival: site.arrival,
+				pictureId: site.pictureId,
+				pictureAlt: site.pictureAlt,
+				timeZone: site.timeZone,
+				currency: site.currency
+			},
+			next: dates[pageDays] ?? null,
+			isFirst: from === today,
+			days: shown.map((date) => {
+				const own = slots.filter(({ localDate }) => localDate === date);
+				return {
+					date,
+					band: dayBand({ site, date, windows, slots: own }),
+					slots: own.map((slot) => ({
+						id: slot.id,
+						zone: slot.zone,
+						startsAt: slot.startsAt,
+						endsAt: slot.endsAt,
+						status: slot.status,
+						placesLeft: placesLeft(slot),
+						arcDeg: slot.arcDeg,
+						share: slot.share,
+						lookAzimuthDeg: slot.lookAzimuthDeg,
+						prices: prices.get(slot.programmeId) ?? []
+					}))
+				};
+			})
+		};
+	});
