@@ -98,17 +98,22 @@ export function refuseDesk(event: Pick<RequestEvent, 'locals'>): never {
 	error(deskRefusal?.status ?? 404, deskRefusal?.message ?? 'There is nothing at this address.');
 }
 
-/** Runs inside the operator of a /desk page; `hooks.server.ts` has checked the membership. */
-export function inDesk<T>(event: RequestEvent, run: (tx: TenantTx) => Promise<T>): Promise<T> {
+/** Who acts on a /desk page, for work that opens transactions of its own. */
+export function deskOrigin(event: Pick<RequestEvent, 'locals'>) {
 	const { membership, user, requestId } = event.locals;
 	if (!membership || !user) refuseDesk(event);
-	const actor = {
-		kind: 'member',
-		userId: user.id,
-		name: user.name,
-		role: membership.role
-	} as const;
-	return inTenant(membership.operatorId, { actor, requestId }, run);
+	const { role, operatorId } = membership;
+	const actor = { kind: 'member', userId: user.id, name: user.name, role } as const;
+	return { operatorId, origin: { actor, requestId } };
+}
+
+/** Runs inside the operator of a /desk page; `hooks.server.ts` has checked the membership. */
+export function inDesk<T>(
+	event: Pick<RequestEvent, 'locals'>,
+	run: (tx: TenantTx) => Promise<T>
+): Promise<T> {
+	const { operatorId, origin } = deskOrigin(event);
+	return inTenant(operatorId, origin, run);
 }
 
 /** Runs as the platform administration; everybody else gets the page of an unknown address. */

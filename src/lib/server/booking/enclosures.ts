@@ -12,9 +12,9 @@ export function ticketQrPng(code: string): Promise<Buffer> {
 	return QRCode.toBuffer(code, { errorCorrectionLevel: 'M', margin: 2, scale: 8 });
 }
 
-/** A ticket's code as a QR drawing for pages: an SVG path on white, whatever the page's colours. */
-export function ticketQrSvg(code: string): Promise<string> {
-	return QRCode.toString(code, { type: 'svg', errorCorrectionLevel: 'M', margin: 2 });
+/** The same as an address that a page can show: dark on white, whatever the page's colours. */
+export function ticketQrAddress(code: string): Promise<string> {
+	return QRCode.toDataURL(code, { errorCorrectionLevel: 'M', margin: 2, scale: 8 });
 }
 
 /** The calendar entry of an order (RFC 5545), times in UTC; called off when the order is. */

@@ -3,9 +3,8 @@ import {
 	changeSeller,
 	readPaymentAccount,
 	refreshAccount,
-	startOnboarding
+	openPaymentAccount
 } from '../payments/accounts';
-import { env } from '../env';
 import { askForForecast } from '../weather/watch';
 import { askDouble, makeDemoOrders } from './orders';
 import { makeDemoPeople } from './people';
@@ -31,7 +30,7 @@ export async function makeDemo(now: Date) {
 			email: 'office@hollin.example.org'
 		})
 	);
-	await startOnboarding(operatorId, origin, env().ORIGIN);
+	await openPaymentAccount(operatorId, origin);
 	const account = await inTenant(operatorId, origin, readPaymentAccount);
 	await askDouble(`accounts/${account!.accountId}/complete`, {});
 	await refreshAccount(operatorId, origin);

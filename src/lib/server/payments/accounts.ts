@@ -56,19 +56,15 @@ export async function sellingObstacles(tx: TenantTx): Promise<string[]> {
 }
 
 /**
- * Leads to the page at the payment service on which the account is completed; opens the account first
- * where there is none. The service is asked between two transactions, never inside one.
+ * Opens the operator's account at the payment service; once, whatever the number of tries. The service
+ * is asked between two transactions, never inside one.
  */
-export async function startOnboarding(
-	operatorId: string,
-	origin: Origin,
-	returnUrl: string
-): Promise<string> {
+export async function openPaymentAccount(operatorId: string, origin: Origin): Promise<void> {
 	const { account, party } = await inTenant(operatorId, origin, async (tx) => {
 		demand(tx, 'money.settings');
 		return { account: await readPaymentAccount(tx), party: await readSeller(tx) };
 	});
-	if (account) return gateway.accountLink(account.accountId, returnUrl);
+	if (account) return;
 	if (!party) throw new Refusal('conflict', 'Enter the seller’s name and address first.');
 	const accountId = await gateway.openAccount({ operatorId, ...party });
 	await inTenant(operatorId, origin, async (tx) => {
@@ -83,7 +79,20 @@ export async function startOnboarding(
 			subject: { type: 'payment_account', id: accountId }
 		});
 	});
-	return gateway.accountLink(accountId, returnUrl);
+}
+
+/** The page at the payment service on which the account is completed. @throws Refusal without one */
+export async function onboardingAddress(
+	operatorId: string,
+	origin: Origin,
+	returnUrl: string
+): Promise<string> {
+	const account = await inTenant(operatorId, origin, (tx) => {
+		demand(tx, 'money.settings');
+		return readPaymentAccount(tx);
+	});
+	if (!account) throw new Refusal('not_found', 'There is no account yet.');
+	return gateway.accountLink(account.accountId, returnUrl);
 }
 
 /** Asks the service whether the account may take payments, and keeps the answer. */

@@ -27,6 +27,7 @@ export function listSlots(
 			capacity: slot.capacity,
 			held: slot.held,
 			sold: slot.sold,
+			arcDeg: slot.arcDeg,
 			suggestion: slotForecast.suggestion,
 			because: slotForecast.because,
 			readAt: slotForecast.readAt

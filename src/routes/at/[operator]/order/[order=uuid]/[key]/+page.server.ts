@@ -1,6 +1,6 @@
 import { error } from '@sveltejs/kit';
 import { emptySchema } from '$lib/schemas/people';
-import { ticketQrSvg } from '$lib/server/booking/enclosures';
+import { ticketQrAddress } from '$lib/server/booking/enclosures';
 import { groupedCode } from '$lib/server/booking/codes';
 import { cancelByVisitor, cancellationTerms, readOrder } from '$lib/server/booking/orders';
 import { settleOrder } from '$lib/server/booking/settle';
@@ -41,7 +41,7 @@ export const load: PageServerLoad = async (event) => {
 				found.tickets.map(async (ticket) => ({
 					...ticket,
 					code: groupedCode(ticket.code),
-					qr: ticket.status === 'valid' ? await ticketQrSvg(ticket.code) : null
+					qr: ticket.status === 'valid' ? await ticketQrAddress(ticket.code) : null
 				}))
 			)
 		},
