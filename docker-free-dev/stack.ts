@@ -39,6 +39,9 @@ export interface Stack {
 	mail: Service;
 	payments: Service;
 	forecast: Service;
+	/** Absent when the stack runs no application. */
+	worker: Service | undefined;
+	web: Service | undefined;
 	environments: Environments;
 	logsDir: string;
 	/** Loads the demo, telling the file that receives its sign-ins. */
@@ -125,14 +128,16 @@ async function startAll(
 		say('migrating the database');
 		await runTool({ ...tool, script: 'src/bin/migrate.ts' });
 	}
+	let worker: Service | undefined;
+	let web: Service | undefined;
 	if (options.application !== 'none') {
 		const development = options.application === 'development';
 		if (hasInProject('src/bin/worker.ts')) {
 			say('starting the worker');
-			keep(await startWorker({ ...common, env: env.worker, watch: development }));
+			worker = keep(await startWorker({ ...common, env: env.worker, watch: development }));
 		}
 		say('starting the web server');
-		keep(await startWeb({ ...common, env: env.web, port: ports.web, origin, buildDir }));
+		web = keep(await startWeb({ ...common, env: env.web, port: ports.web, origin, buildDir }));
 	}
 
 	return {
@@ -141,6 +146,8 @@ async function startAll(
 		mail,
 		payments,
 		forecast,
+		worker,
+		web,
 		environments: env,
 		logsDir,
 		demoFile,

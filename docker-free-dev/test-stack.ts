@@ -49,7 +49,8 @@ export async function startTestStack(application: boolean): Promise<TestStack> {
 			durable: false,
 			application: application ? 'built' : 'none',
 			say: () => {},
-			logLevel: 'warn'
+			// The services' own warnings would only stand between the tests' names.
+			logLevel: application ? 'info' : 'fatal'
 		});
 		if (application && hasInProject('src/bin/demo.ts')) await stack.loadDemo();
 		return {

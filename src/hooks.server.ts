@@ -1,4 +1,12 @@
-import { error, redirect, type Handle, type HandleServerError } from '@sveltejs/kit';
+import {
+	error,
+	isHttpError,
+	isRedirect,
+	redirect,
+	type Handle,
+	type HandleServerError,
+	type RequestEvent
+} from '@sveltejs/kit';
 import { sequence } from '@sveltejs/kit/hooks';
 import { randomUUID } from 'node:crypto';
 import { sessionCookieName } from '$lib/server/auth/lucia';
@@ -23,23 +31,25 @@ export const init = async () => {
 const observe: Handle = async ({ event, resolve }) => {
 	event.locals.requestId = randomUUID();
 	const started = performance.now();
-	const response = await resolve(event);
-	const ms = performance.now() - started;
-	// The route's pattern and not the address: addresses may hold tokens.
-	const route = event.route.id ?? 'unknown';
-	observeRequest(event.request.method, route, response.status, ms / 1000);
-	log.info(
-		{
-			requestId: event.locals.requestId,
-			method: event.request.method,
-			route,
-			status: response.status,
-			ms: Math.round(ms)
-		},
-		'request'
-	);
-	response.headers.set('x-request-id', event.locals.requestId);
-	return response;
+	const note = (status: number) => {
+		const ms = performance.now() - started;
+		// The route's pattern and not the address: addresses may hold tokens.
+		const route = event.route.id ?? 'unknown';
+		const { method } = event.request;
+		observeRequest(method, route, status, ms / 1000);
+		const { requestId } = event.locals;
+		log.info({ requestId, method, route, status, ms: Math.round(ms) }, 'request');
+	};
+	try {
+		const response = await resolve(event);
+		note(response.status);
+		response.headers.set('x-request-id', event.locals.requestId);
+		return response;
+	} catch (thrown) {
+		// A guard below refused or sent elsewhere; SvelteKit makes the answer of it.
+		note(isRedirect(thrown) || isHttpError(thrown) ? thrown.status : 500);
+		throw thrown;
+	}
 };
 
 const https = () => env().ORIGIN.startsWith('https:');
@@ -70,6 +80,15 @@ const headers: Handle = async ({ event, resolve }) => {
 const formLimit = 256 * 1024;
 const uploadLimit = 12 * 1024 * 1024;
 
+/**
+ * Refuses a request with a body. The body is let run off first: left on the line, it would hold up
+ * whatever comes next on the same connection.
+ */
+async function refuseWrite(event: RequestEvent, status: number, message: string): Promise<never> {
+	await event.request.body?.pipeTo(new WritableStream());
+	error(status, message);
+}
+
 /** Refuses bodies that are too large and writes that come from another site. */
 const guardWrites: Handle = async ({ event, resolve }) => {
 	if (!['GET', 'HEAD', 'OPTIONS'].includes(event.request.method)) {
@@ -77,14 +96,19 @@ const guardWrites: Handle = async ({ event, resolve }) => {
 			.get('content-type')
 			?.toLowerCase()
 			.startsWith('multipart/form-data');
-		const length = Number(event.request.headers.get('content-length') ?? 0);
+		const said = event.request.headers.get('content-length');
+		if (said === null && event.request.body) {
+			await refuseWrite(event, 411, 'Say how long this is.');
+		}
+		const length = Number(said ?? 0);
 		if (length > (isUpload ? uploadLimit : formLimit)) {
-			error(413, `This is too large: at most ${isUpload ? '12 MB' : '256 kB'} can be sent.`);
+			const most = isUpload ? '12 MB' : '256 kB';
+			await refuseWrite(event, 413, `This is too large: at most ${most} can be sent.`);
 		}
 		// SvelteKit checks the origin of forms; this does the same for JSON sent with a session.
 		const origin = event.request.headers.get('origin');
 		if (event.cookies.get(sessionCookieName) && origin !== null && origin !== event.url.origin) {
-			error(403, 'This came from another site.');
+			await refuseWrite(event, 403, 'This came from another site.');
 		}
 	}
 	return resolve(event);

@@ -1,4 +1,4 @@
-import { spawnSync } from 'node:child_process';
+import { spawn } from 'node:child_process';
 import { createHash } from 'node:crypto';
 import {
 	cpSync,
@@ -12,6 +12,7 @@ import {
 	writeFileSync
 } from 'node:fs';
 import path from 'node:path';
+import { LogFile } from './log-file.ts';
 import { startTicks } from './processes.ts';
 import { hasInProject, inProject, localDir, makeLocalDir, projectRoot } from './paths.ts';
 import { delay } from './wait.ts';
@@ -46,7 +47,7 @@ export function sourceDigest(): string {
 /**
  * The folder of a server built from the sources as they are now; builds when there is none. Each build
  * is run from a copy, so that building again never pulls files from under a running server.
- * @throws Error when the build fails; its output was shown.
+ * @throws Error when the build fails; it ends with the last lines of the builder.
  */
 export async function freshBuild(say: (line: string) => void): Promise<string> {
 	makeLocalDir();
@@ -59,17 +60,30 @@ export async function freshBuild(say: (line: string) => void): Promise<string> {
 	const release = await takeBuildTurn();
 	try {
 		say('building the web server');
-		const build = spawnSync(
-			process.execPath,
-			[inProject('node_modules/vite/bin/vite.js'), 'build', '--logLevel', 'warn'],
-			{ cwd: projectRoot, stdio: ['ignore', 'inherit', 'inherit'] }
-		);
-		if (build.status !== 0) throw new Error('The build failed.');
+		await build();
 		keep(kept);
 		return kept;
 	} finally {
 		release();
 	}
+}
+
+/** Runs the builder; what it has to say goes to a log file. */
+async function build(): Promise<void> {
+	const log = new LogFile(path.join(localDir, 'logs'), 'build');
+	const child = spawn(process.execPath, [inProject('node_modules/vite/bin/vite.js'), 'build'], {
+		cwd: projectRoot,
+		stdio: ['ignore', 'pipe', 'pipe']
+	});
+	for (const stream of [child.stdout, child.stderr]) {
+		stream.on('data', (chunk: Buffer) => log.write(chunk.toString()));
+	}
+	const code = await new Promise<number | null>((resolve, reject) => {
+		child.once('error', reject);
+		child.once('close', resolve);
+	});
+	log.close();
+	if (code !== 0) throw new Error(`The build failed. The end of ${log.path}:\n${log.tail(40)}`);
 }
 
 function keep(kept: string): void {

@@ -10,6 +10,8 @@ export interface Service {
 	address: string;
 	/** Ends it in order; answers when it is gone. */
 	stop(): Promise<void>;
+	/** The process that runs it now; undefined between a death and the next start. */
+	pid(): number | undefined;
 }
 
 export interface ProcessSpec {
@@ -47,7 +49,7 @@ const HEALTHY_MS = 10_000;
  * Starts a process, waits until it is ready, and starts it again with back-off whenever it dies.
  * @throws Error when the first run ends or stays unready; the message carries the log's last lines.
  */
-export async function supervise(spec: ProcessSpec): Promise<{ stop(): Promise<void> }> {
+export async function supervise(spec: ProcessSpec): Promise<Pick<Service, 'stop' | 'pid'>> {
 	const supervisor = new Supervisor(spec);
 	await supervisor.first();
 	return supervisor;
@@ -76,6 +78,11 @@ class Supervisor {
 			throw new Error(`${name} ${why}. The end of ${log.path}:\n${log.tail()}`);
 		}
 		void this.#keepUp(end);
+	}
+
+	pid(): number | undefined {
+		const child = this.#child;
+		return child && child.exitCode === null && child.signalCode === null ? child.pid : undefined;
 	}
 
 	async stop(): Promise<void> {

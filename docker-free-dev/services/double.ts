@@ -37,5 +37,5 @@ export async function startDouble(options: DoubleOptions): Promise<Service> {
 		ready: () => answers(`${address}/_double/health`, (status) => status === 200),
 		notice: options.notice
 	});
-	return { name: kind, address, stop: () => running.stop() };
+	return { name: kind, address, stop: () => running.stop(), pid: () => running.pid() };
 }

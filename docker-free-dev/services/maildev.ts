@@ -38,5 +38,5 @@ export async function startMaildev(options: MaildevOptions): Promise<Service> {
 		ready: () => answers(`${address}/healthz`),
 		notice: options.notice
 	});
-	return { name: 'mail', address, stop: () => running.stop() };
+	return { name: 'mail', address, stop: () => running.stop(), pid: () => running.pid() };
 }

@@ -77,7 +77,8 @@ export async function startPostgres(options: PostgresOptions): Promise<PostgresS
 			app: address('bowkeeper_app', secrets.appPassword),
 			queue: address('bowkeeper_queue', secrets.queuePassword)
 		},
-		stop: () => running.stop()
+		stop: () => running.stop(),
+		pid: () => running.pid()
 	};
 }
 

@@ -49,5 +49,5 @@ export async function startWeb(options: WebOptions): Promise<Service> {
 		stopTimeoutMs: 15_000,
 		notice: options.notice
 	});
-	return { name: 'web', address: origin, stop: () => running.stop() };
+	return { name: 'web', address: origin, stop: () => running.stop(), pid: () => running.pid() };
 }

@@ -37,5 +37,5 @@ export async function startWorker(options: WorkerOptions): Promise<Service> {
 		stopTimeoutMs: 15_000,
 		notice: options.notice
 	});
-	return { name: 'worker', address: '', stop: () => running.stop() };
+	return { name: 'worker', address: '', stop: () => running.stop(), pid: () => running.pid() };
 }

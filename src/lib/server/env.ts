@@ -24,7 +24,10 @@ const schema = z.object({
 	/** PostgreSQL as `bowkeeper_owner`, who owns the tables (migrations only). */
 	DATABASE_OWNER_URL: url(['postgres:', 'postgresql:']).optional(),
 	/** Public address of the web server, without a path. */
-	ORIGIN: url(['http:', 'https:']),
+	ORIGIN: url(['http:', 'https:']).refine(
+		(value) => !URL.canParse(value) || new URL(value).origin === value,
+		{ message: 'must be scheme, host and port alone, without a path or a slash at the end' }
+	),
 	/** 32 bytes in base64: seals second-step secrets at rest. */
 	SECRET_KEY: z.string().refine((value) => Buffer.from(value, 'base64').length === 32, {
 		message: 'must be 32 bytes in base64'

@@ -1,4 +1,5 @@
 import { and, desc, eq, gte, ilike, lt, type SQL } from 'drizzle-orm';
+import { demand } from '../auth/rights';
 import { trail } from '../db/schema';
 import type { PlainTx, TenantTx } from '../db/transaction';
 
@@ -43,6 +44,7 @@ export interface TrailFilter {
 
 /** A page of the operator's trail, newest first, and where the next page starts (null at the end). */
 export async function readTrail(tx: TenantTx, filter: TrailFilter) {
+	demand(tx, 'trail.read');
 	const wanted: (SQL | undefined)[] = [eq(trail.operatorId, tx.operatorId)];
 	if (filter.who) wanted.push(ilike(trail.actorName, `%${likeLiteral(filter.who)}%`));
 	if (filter.what) wanted.push(ilike(trail.action, `${likeLiteral(filter.what)}%`));

@@ -7,7 +7,7 @@ import { inPerson, inPublic, type PlainTx } from '../db/transaction';
 import { env } from '../env';
 import { Refusal } from '../failures';
 import { writeLetter } from '../mail/outbox';
-import { countAttempt } from './limits';
+import { countAttempt, forgetAttempts } from './limits';
 import { hashPassword, passwordFits } from './passwords';
 import { endAllSessions, openSession } from './sessions';
 import { hashToken, newToken } from './tokens';
@@ -160,13 +160,15 @@ function inOwnAccount<T>(person: SignedIn, run: (tx: PlainTx) => Promise<T>): Pr
 /** Checks the password of somebody who is signed in. @throws Refusal at field `current` */
 export async function demandPassword(person: SignedIn, current: string): Promise<void> {
 	// Counted first: a stolen session must not become a way to guess the password.
-	await countAttempt('signInAccount', `confirm ${person.userId}`);
+	const key = `confirm ${person.userId}`;
+	await countAttempt('signInAccount', key);
 	const found = await inOwnAccount(person, (tx) =>
 		tx.sql.query.user.findFirst({ where: eq(user.id, person.userId) })
 	);
 	if (!(await passwordFits(found?.passwordHash ?? null, current))) {
 		throw new Refusal('invalid', 'This is not your password.', 'current');
 	}
+	await forgetAttempts('signInAccount', key);
 }
 
 /** Changes the password: other sessions end and this one gets a new id. */

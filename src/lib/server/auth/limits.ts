@@ -1,5 +1,5 @@
 import { RateLimiterPostgres, RateLimiterRes } from 'rate-limiter-flexible';
-import { getPool } from '../db/client';
+import { getSidePool } from '../db/client';
 import { Refusal } from '../failures';
 import { hashToken } from './tokens';
 
@@ -25,7 +25,7 @@ function limiter(rule: LimitRule): RateLimiterPostgres {
 	let found = limiters.get(rule);
 	if (!found) {
 		found = new RateLimiterPostgres({
-			storeClient: getPool(),
+			storeClient: getSidePool(),
 			storeType: 'pool',
 			tableName: 'rate_limit',
 			tableCreated: true,
@@ -47,13 +47,10 @@ function tooMany(waitMs: number): Refusal {
 	);
 }
 
-/** @throws Refusal when the limit is used up; counts nothing. */
-export async function demandAttemptLeft(rule: LimitRule, key: string): Promise<void> {
-	const state = await limiter(rule).get(hashToken(key));
-	if (state && state.consumedPoints >= rules[rule].points) throw tooMany(state.msBeforeNext);
-}
-
-/** Counts one attempt. @throws Refusal when the limit is used up. */
+/**
+ * Counts one attempt; before it is looked at, so that many at once are no more than many in a row.
+ * @throws Refusal when the limit is used up
+ */
 export async function countAttempt(rule: LimitRule, key: string): Promise<void> {
 	try {
 		await limiter(rule).consume(hashToken(key));
@@ -61,6 +58,11 @@ export async function countAttempt(rule: LimitRule, key: string): Promise<void> 
 		if (answer instanceof RateLimiterRes) throw tooMany(answer.msBeforeNext);
 		throw answer;
 	}
+}
+
+/** Takes back one attempt that was counted and turned out to be rightful. */
+export async function giveBackAttempt(rule: LimitRule, key: string): Promise<void> {
+	await limiter(rule).reward(hashToken(key));
 }
 
 /** Forgets the attempts, after one that succeeded. */

@@ -1,5 +1,5 @@
 import type { Role } from '../db/schema/operators';
-import type { TenantTx } from '../db/transaction';
+import type { PlainTx, TenantTx } from '../db/transaction';
 import { Refusal } from '../failures';
 
 /** Who may do what: the one table. The owner may do everything. */
@@ -39,4 +39,14 @@ export function demand(tx: TenantTx, right: Right): void {
 	if (tx.actor.kind === 'worker') return;
 	if (tx.actor.kind === 'member' && mayRole(tx.actor.role, right)) return;
 	throw new Refusal('forbidden', 'Your role at this operator does not include this.');
+}
+
+/**
+ * Checks that the transaction's actor is the platform administration.
+ * @throws Refusal (forbidden)
+ */
+export function demandPlatform(tx: PlainTx): void {
+	if (tx.actor.kind !== 'platform') {
+		throw new Refusal('forbidden', 'This is for the platform administration.');
+	}
 }

@@ -6,7 +6,7 @@ import { addToTrail } from '../audit/trail';
 import { recoveryCode, user } from '../db/schema';
 import type { PlainTx } from '../db/transaction';
 import { Refusal } from '../failures';
-import { countAttempt, demandAttemptLeft, forgetAttempts } from './limits';
+import { countAttempt, forgetAttempts } from './limits';
 import { seal, unseal } from './seal';
 import { openSession } from './sessions';
 import { hashToken } from './tokens';
@@ -120,14 +120,11 @@ export async function passSecondStep(
 	person: { userId: string; email: string; sessionId: string; userAgent: string },
 	code: string
 ): Promise<Cookie> {
-	await demandAttemptLeft('signInAccount', person.email);
+	await countAttempt('signInAccount', person.email);
 	const passed = /^\d{6}$/.test(code)
 		? await useTotp(tx, person, code)
 		: await useRecoveryCode(tx, person.userId, code);
-	if (!passed) {
-		await countAttempt('signInAccount', person.email);
-		throw new Refusal('invalid', 'This code is wrong or was used before.', 'code');
-	}
+	if (!passed) throw new Refusal('invalid', 'This code is wrong or was used before.', 'code');
 	await forgetAttempts('signInAccount', person.email);
 	return openSession(tx, {
 		userId: person.userId,

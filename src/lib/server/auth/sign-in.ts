@@ -4,7 +4,7 @@ import { addToTrail } from '../audit/trail';
 import { user } from '../db/schema';
 import { inPerson, inPublic } from '../db/transaction';
 import { Refusal } from '../failures';
-import { countAttempt, demandAttemptLeft, forgetAttempts } from './limits';
+import { countAttempt, forgetAttempts, giveBackAttempt } from './limits';
 import { passwordFits } from './passwords';
 import { openSession } from './sessions';
 
@@ -27,19 +27,18 @@ export interface SignInAttempt {
 export async function signIn(
 	attempt: SignInAttempt
 ): Promise<{ cookie: Cookie; secondStepNeeded: boolean }> {
-	await demandAttemptLeft('signInAddress', attempt.address);
-	await demandAttemptLeft('signInAccount', attempt.email);
+	await countAttempt('signInAddress', attempt.address);
+	await countAttempt('signInAccount', attempt.email);
 
 	const found = await inPublic({ actor: { kind: 'visitor', name: 'nobody yet' } }, (tx) =>
 		tx.sql.query.user.findFirst({ where: eq(user.email, attempt.email) })
 	);
 	if (!(await passwordFits(found?.passwordHash ?? null, attempt.password)) || !found) {
-		await countAttempt('signInAddress', attempt.address);
-		await countAttempt('signInAccount', attempt.email);
 		throw new Refusal('invalid', 'Address and password do not fit together.');
 	}
-	// With a second step, attempts are forgotten only when that has been passed too.
-	if (!found.secondStepSince) await forgetAttempts('signInAccount', attempt.email);
+	await giveBackAttempt('signInAddress', attempt.address);
+	// With a second step, wrong attempts are forgotten only when that has been passed too.
+	await (found.secondStepSince ? giveBackAttempt : forgetAttempts)('signInAccount', attempt.email);
 
 	const actor = { kind: 'person', userId: found.id, name: found.name } as const;
 	return inPerson(found.id, { actor, requestId: attempt.requestId }, async (tx) => {

@@ -19,23 +19,36 @@ function isNotThereYet(error: unknown): boolean {
 }
 
 let pool: pg.Pool | undefined;
+let sidePool: pg.Pool | undefined;
+
+function makePool(max: number): pg.Pool {
+	const made = new pg.Pool({
+		connectionString: env().DATABASE_URL,
+		max,
+		idleTimeoutMillis: 30_000,
+		connectionTimeoutMillis: 5_000,
+		statement_timeout: 30_000,
+		idle_in_transaction_session_timeout: 60_000,
+		application_name: 'bowkeeper'
+	});
+	// An idle connection that breaks is dropped by the pool; without a listener the process would end.
+	made.on('error', (error) => log.warn({ err: error }, 'idle database connection lost'));
+	return made;
+}
 
 /** The process's connections as the application's role. */
 export function getPool(): pg.Pool {
-	if (!pool) {
-		pool = new pg.Pool({
-			connectionString: env().DATABASE_URL,
-			max: 12,
-			idleTimeoutMillis: 30_000,
-			connectionTimeoutMillis: 5_000,
-			statement_timeout: 30_000,
-			idle_in_transaction_session_timeout: 60_000,
-			application_name: 'bowkeeper'
-		});
-		// An idle connection that breaks is dropped by the pool; without a listener the process would end.
-		pool.on('error', (error) => log.warn({ err: error }, 'idle database connection lost'));
-	}
+	pool ??= makePool(12);
 	return pool;
+}
+
+/**
+ * Connections for single statements that stay whatever becomes of the transaction around them. They
+ * are apart, so that transactions which hold every other connection never wait for one more.
+ */
+export function getSidePool(): pg.Pool {
+	sidePool ??= makePool(3);
+	return sidePool;
 }
 
 /**
@@ -65,7 +78,8 @@ export async function connect(opening: string): Promise<pg.PoolClient> {
 
 /** Ends the connections; for a graceful stop. */
 export async function closePool(): Promise<void> {
-	const ending = pool;
+	const ending = [pool, sidePool];
 	pool = undefined;
-	await ending?.end();
+	sidePool = undefined;
+	await Promise.all(ending.map((one) => one?.end()));
 }

@@ -1,4 +1,5 @@
 import { sql } from 'drizzle-orm';
+import { demandPlatform } from '../auth/rights';
 import type { PlainTx } from '../db/transaction';
 
 /** A job as the queue page shows it. */
@@ -30,6 +31,7 @@ export async function listJobs(
 	tx: PlainTx,
 	{ onlyFailed, most, skip }: { onlyFailed: boolean; most: number; skip: number }
 ): Promise<QueuedJob[]> {
+	demandPlatform(tx);
 	const result = await tx.sql.execute<{
 		id: string;
 		task: string;
@@ -56,6 +58,7 @@ export async function listJobs(
 
 /** Lets a job run now; false when it is gone or running. */
 export async function retryJob(tx: PlainTx, jobId: string): Promise<boolean> {
+	demandPlatform(tx);
 	const result = await tx.sql.execute<{ done: boolean }>(
 		sql`select queue.retry_job(${jobId}::bigint) as done`
 	);

@@ -1,7 +1,7 @@
 import { run, Logger, type Runner, type TaskList } from 'graphile-worker';
 import pg from 'pg';
 import { env } from '../env';
-import { log } from '../log';
+import { log, plainError } from '../log';
 import { attemptOf, handlers, type TaskPayloads } from './tasks';
 
 /** Any number that only this lock uses. */
@@ -51,9 +51,10 @@ export async function startWorker(concurrency = 4): Promise<Worker> {
 		pollInterval: 1000,
 		crontab: '17 * * * * delete_expired {}\n*/30 * * * * read_forecasts {}',
 		logger: new Logger(() => (level, message, meta) => {
-			// Messages of finished jobs would repeat what the handlers log.
-			if (level === 'error') log.error({ meta: errorOnly(meta) }, message);
-			else if (level === 'warning') log.warn(message);
+			// Messages of jobs, done or failed, would repeat what is logged below.
+			if (level === 'error' && !message.startsWith('Failed task')) {
+				log.error({ err: (meta as { error?: unknown } | undefined)?.error }, message);
+			} else if (level === 'warning') log.warn(message);
 			else log.debug(message);
 		})
 	});
@@ -80,11 +81,6 @@ function supervise(runner: Runner, pool: pg.Pool, guard: pg.Client, lost: Promis
 	return { ended, stop: close };
 }
 
-function errorOnly(meta: unknown): unknown {
-	const error = (meta as { error?: unknown } | undefined)?.error;
-	return error instanceof Error ? { message: error.message, stack: error.stack } : undefined;
-}
-
 function taskList(): TaskList {
 	const list: TaskList = {};
 	for (const name of Object.keys(handlers) as (keyof TaskPayloads)[]) {
@@ -101,7 +97,8 @@ function taskList(): TaskList {
 				);
 			} catch (error) {
 				log.warn({ task: name, job: helpers.job.id, attempt, err: error }, 'job failed');
-				throw error;
+				// The queue keeps the message and shows it to the platform: nothing of a person in it.
+				throw new Error(plainError(error).message, { cause: error });
 			}
 		};
 	}

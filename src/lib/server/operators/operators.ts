@@ -1,7 +1,7 @@
 import { and, asc, count, eq, like, sql } from 'drizzle-orm';
 import { v7 as uuidv7 } from 'uuid';
 import { addToTrail } from '../audit/trail';
-import { demand } from '../auth/rights';
+import { demand, demandPlatform } from '../auth/rights';
 import { member, operator } from '../db/schema';
 import type { Role } from '../db/schema/operators';
 import { inTenant, type PlainTx, type TenantTx } from '../db/transaction';
@@ -121,12 +121,6 @@ export async function changeOperator(
 		before: { name: before.name, requireSecondStep: before.requireSecondStep },
 		after: wanted
 	});
-}
-
-function demandPlatform(tx: PlainTx): void {
-	if (tx.actor.kind !== 'platform') {
-		throw new Refusal('forbidden', 'This is for the platform administration.');
-	}
 }
 
 /** A page of all operators, for the platform administration. */
