@@ -15,6 +15,8 @@
 export const RING_START = -2;
 export const RING_END = 2;
 
+const QUARTER_PI = Math.PI / 4;
+
 /** The pseudo-angle of a vector of any length above 0. */
 function pseudoAngle(c: number, s: number): number {
 	const p = s / (Math.abs(c) + Math.abs(s));
@@ -22,10 +24,14 @@ function pseudoAngle(c: number, s: number): number {
 	return s >= 0 ? 2 - p : -2 - p;
 }
 
-/** The angle phi in radians, -pi to pi, of a pseudo-angle. */
+/**
+ * The angle phi in radians, -pi to pi, of a pseudo-angle. For p from 0 to 1 it is the angle of the vector
+ * (1 - p, p), that is pi/4 + atan(2 p - 1); from 1 to 2 the mirror image of that.
+ */
 export function angleOfPseudo(p: number): number {
-	const size = Math.abs(p);
-	const angle = size <= 1 ? Math.atan2(size, 1 - size) : Math.atan2(2 - size, 1 - size);
+	const size = p < 0 ? -p : p;
+	const angle =
+		size <= 1 ? QUARTER_PI + Math.atan(2 * size - 1) : 3 * QUARTER_PI + Math.atan(2 * size - 3);
 	return p < 0 ? -angle : angle;
 }
 
@@ -33,6 +39,13 @@ export function angleOfPseudo(p: number): number {
 export function fillRing(set: Float64Array): number {
 	set[0] = RING_START;
 	set[1] = RING_END;
+	return 1;
+}
+
+/** Makes a set the least single interval that holds another of n intervals, n above 0. */
+export function hullOf(set: Float64Array, other: Float64Array, n: number): number {
+	set[0] = other[0]!;
+	set[1] = other[2 * n - 1]!;
 	return 1;
 }
 
@@ -67,6 +80,11 @@ export function subtractInterval(set: Float64Array, n: number, lo: number, hi: n
 
 /** Keeps of a set what lies in [lo, hi]. */
 function keepInterval(set: Float64Array, n: number, lo: number, hi: number): number {
+	if (n === 1) {
+		if (set[0]! < lo) set[0] = lo;
+		if (set[1]! > hi) set[1] = hi;
+		return set[0]! < set[1]! ? 1 : 0;
+	}
 	let kept = 0;
 	for (let j = 0; j < n; j++) {
 		const start = set[2 * j]!;
@@ -123,6 +141,10 @@ export function subtractSet(set: Float64Array, n: number, other: Float64Array, m
 
 /** Joins a set `other` of m intervals to a set. */
 export function uniteSet(set: Float64Array, n: number, other: Float64Array, m: number): number {
+	if (n === 0) {
+		for (let k = 0; k < 2 * m; k++) set[k] = other[k]!;
+		return m;
+	}
 	let count = n;
 	for (let j = 0; j < m; j++) {
 		let start = other[2 * j]!;
