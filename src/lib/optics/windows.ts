@@ -1,6 +1,6 @@
 import type { LocalDate } from '../schedule/local-clock';
 import { localDayRange } from '../schedule/local-days';
-import { OpenSearch, ROOT_SPAN_S } from './open-search';
+import { OpenSearch } from './open-search';
 import { findPeaks } from './peaks';
 import type { Site, Zone } from './site';
 import { sunTracker } from './sun';
@@ -8,6 +8,9 @@ import { sightOf } from './instant';
 
 /** Shorter gaps are closed, and then shorter windows dropped, seconds. */
 export const LEAST_SPAN_S = 60;
+
+/** Seconds that are searched at a time. */
+const PART_S = 8192;
 
 /** An interval in which a zone is open to the bow. */
 export interface BowWindow {
@@ -59,9 +62,7 @@ function* openSpans(search: OpenSearch, startS: number, endS: number): Generator
 		}
 		current = null;
 	};
-	const sink = (firstS: number, lastS: number) => {
-		const first = Math.max(firstS, from);
-		if (lastS < first) return;
+	const sink = (first: number, lastS: number) => {
 		if (current && first - current.endS < LEAST_SPAN_S) {
 			current.endS = lastS;
 			return;
@@ -70,13 +71,12 @@ function* openSpans(search: OpenSearch, startS: number, endS: number): Generator
 		current = { startS: first, endS: lastS };
 	};
 	const currentSpan = (): Span | null => current;
-	let rootS = Math.floor(from / ROOT_SPAN_S) * ROOT_SPAN_S;
-	for (; ; rootS += ROOT_SPAN_S) {
+	for (let partS = from; ; partS += PART_S) {
 		const open = currentSpan();
 		// Past the end only a span that started before it is still followed.
-		const followed = open !== null && open.startS < endS && rootS - open.endS < LEAST_SPAN_S;
-		if (rootS >= endS && !followed) break;
-		search.search(rootS, sink);
+		const followed = open !== null && open.startS < endS && partS - open.endS < LEAST_SPAN_S;
+		if (partS >= endS && !followed) break;
+		search.search(partS, partS + PART_S, sink);
 		yield* done.splice(0);
 	}
 	close();
