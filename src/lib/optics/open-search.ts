@@ -2,7 +2,8 @@ import { RAD_PER_DEG } from './angles';
 import { ringFrame } from './ring';
 import { Sight } from './sight';
 import type { Site, Zone } from './site';
-import { roomInCell, SkyCells, type SkyCell } from './sky-cells';
+import { roomInDisc } from './sky-disc';
+import { SkyVerdicts, type SkyVerdict } from './sky-verdicts';
 import { FASTEST_SUN_RAD_PER_S, sunTracker, type SunPosition } from './sun';
 import { CLOSED, horizonVerdict, OPEN, ShareCounter, UNSURE, type Verdict } from './verdict';
 
@@ -37,7 +38,7 @@ export class OpenSearch {
 	private readonly sight: Sight;
 	private readonly sunAt: (instantMs: number) => SunPosition;
 	private readonly counter: ShareCounter;
-	private readonly cells: SkyCells;
+	private readonly sky: SkyVerdicts;
 	/** Eyes unsure at each depth of halving. */
 	private readonly unsure: Int32Array[];
 
@@ -46,7 +47,7 @@ export class OpenSearch {
 		this.sight = new Sight(site, zone.eyes);
 		this.sunAt = sunTracker(site);
 		this.counter = new ShareCounter(site, zone, this.sight);
-		this.cells = new SkyCells(site, zone, this.sight, this.counter);
+		this.sky = new SkyVerdicts(site, zone, this.sight, this.counter);
 		this.unsure = Array.from(
 			{ length: Math.log2(LONGEST_SPAN_S) + 2 },
 			() => new Int32Array(zone.eyes.length)
@@ -62,15 +63,15 @@ export class OpenSearch {
 				s += Math.max(1, Math.floor(belowRad / FASTEST_SUN_RAD_PER_S));
 				continue;
 			}
-			const cell = this.cells.cellOf(sun);
+			const { disc, known } = this.sky.cellOf(sun);
 			// Seconds after this one at which the sun is still in the disc.
-			const after = Math.floor(roomInCell(cell, sun) / FASTEST_SUN_RAD_PER_S);
-			if (cell.verdict !== UNSURE && after >= 0) {
+			const after = Math.floor(roomInDisc(disc, sun) / FASTEST_SUN_RAD_PER_S);
+			if (known.verdict !== UNSURE && after >= 0) {
 				const last = Math.min(s + after, endS - 1);
-				if (cell.verdict === OPEN) sink(s, last);
+				if (known.verdict === OPEN) sink(s, last);
 				s = last + 1;
 			} else {
-				s += this.halve(s, Math.min(after + 1, endS - s), cell, sink);
+				s += this.halve(s, Math.min(after + 1, endS - s), known, sink);
 			}
 		}
 	}
@@ -80,10 +81,10 @@ export class OpenSearch {
 	 * @param most seconds that the span may have; below 1 the sun is outside the disc
 	 * @returns seconds that were gone through
 	 */
-	private halve(a: number, most: number, cell: SkyCell, sink: RunSink): number {
+	private halve(a: number, most: number, ofCell: SkyVerdict, sink: RunSink): number {
 		let length = 1;
 		while (2 * length <= Math.min(most, LONGEST_SPAN_S)) length *= 2;
-		const known = most >= 1 ? cell : this.cells.nothingKnown;
+		const known = most >= 1 ? ofCell : this.sky.nothingKnown;
 		this.unsure[0]!.set(known.unsure.subarray(0, known.unsureCount));
 		this.visit(a, length, 0, known.share, known.had, known.unsureCount, sink);
 		return length;

@@ -1,10 +1,8 @@
 import type { LocalDate } from '../schedule/local-clock';
 import { localDayRange } from '../schedule/local-days';
 import { OpenSearch } from './open-search';
-import { findPeaks } from './peaks';
+import { PeakFinder } from './peaks';
 import type { Site, Zone } from './site';
-import { sunTracker } from './sun';
-import { sightOf } from './instant';
 
 /** Shorter gaps are closed, and then shorter windows dropped, seconds. */
 export const LEAST_SPAN_S = 60;
@@ -36,6 +34,18 @@ export interface ZoneWindows {
 interface Span {
 	readonly startS: number;
 	readonly endS: number;
+}
+
+/** What has been found out of the sky over a zone serves every range of dates that is asked for. */
+const finders = new WeakMap<Zone, { search: OpenSearch; peaks: PeakFinder }>();
+
+function finderOf(site: Site, zone: Zone): { search: OpenSearch; peaks: PeakFinder } {
+	let finder = finders.get(zone);
+	if (!finder) {
+		finder = { search: new OpenSearch(site, zone), peaks: new PeakFinder(site, zone) };
+		finders.set(zone, finder);
+	}
+	return finder;
 }
 
 /**
@@ -105,9 +115,7 @@ export function* zoneWindows({
 	to: LocalDate;
 }): Generator<BowWindow> {
 	const { startMs, endMs } = localDayRange({ timeZone: site.clock.timeZone, from, to });
-	const sunAt = sunTracker(site);
-	const sight = sightOf(site, zone);
-	const search = new OpenSearch(site, zone);
+	const { search, peaks } = finderOf(site, zone);
 	for (const { startS, endS } of openSpans(
 		search,
 		Math.ceil(startMs / 1000),
@@ -119,7 +127,7 @@ export function* zoneWindows({
 			date,
 			startMs: startS * 1000,
 			endMs: endS * 1000,
-			...findPeaks({ site, zone, sight, sunAt, startS, endS })
+			...peaks.find(startS, endS)
 		};
 	}
 }
