@@ -80,11 +80,6 @@ export function subtractInterval(set: Float64Array, n: number, lo: number, hi: n
 
 /** Keeps of a set what lies in [lo, hi]. */
 function keepInterval(set: Float64Array, n: number, lo: number, hi: number): number {
-	if (n === 1) {
-		if (set[0]! < lo) set[0] = lo;
-		if (set[1]! > hi) set[1] = hi;
-		return set[0]! < set[1]! ? 1 : 0;
-	}
 	let kept = 0;
 	for (let j = 0; j < n; j++) {
 		const start = set[2 * j]!;
@@ -100,34 +95,65 @@ function keepInterval(set: Float64Array, n: number, lo: number, hi: number): num
 }
 
 /**
- * Keeps of a set the phi with alpha + beta cos phi + gamma sin phi >= 0.
+ * Keeps of a set the phi with alpha + beta cos phi + gamma sin phi >= 0 for each of several conditions.
  *
- * The test changes sign where the line alpha + beta c + gamma s = 0 cuts the unit circle, at
+ * A test changes sign where the line alpha + beta c + gamma s = 0 cuts the unit circle, at
  * (-alpha (beta, gamma) +- q (gamma, -beta)) / r^2 with r^2 = beta^2 + gamma^2, q^2 = r^2 - alpha^2; the
  * pseudo-angle needs no division by r^2. A line that touches the circle, or misses it by rounding,
  * keeps all or nothing, whichever side it is on; a sliver of rounding is never taken for its
  * complement, since an interval with alpha >= 0 spans at least half of the ring and one with alpha < 0
  * at most half.
+ *
+ * The conditions come in an array and a set of one interval is cut in place, because numbers handed to
+ * functions one by one are boxed, which costs more here than the arithmetic.
+ *
+ * @param conditions alpha, beta, gamma of each, one after the other
+ * @param count how many there are
  */
-export function clipHalfPlane(
+export function clipAll(
 	set: Float64Array,
-	n: number,
-	alpha: number,
-	beta: number,
-	gamma: number
+	intervals: number,
+	conditions: Float64Array,
+	count: number
 ): number {
-	const r2 = beta * beta + gamma * gamma;
-	const q2 = r2 - alpha * alpha;
-	if (!(q2 > 0)) return alpha >= 0 ? n : 0;
-	const q = Math.sqrt(q2);
-	const enter = pseudoAngle(-alpha * beta + gamma * q, -alpha * gamma - beta * q);
-	const leave = pseudoAngle(-alpha * beta - gamma * q, -alpha * gamma + beta * q);
-	if (enter <= leave) {
-		if (alpha >= 0 && leave - enter < 1) return n;
-		return keepInterval(set, n, enter, leave);
+	let n = intervals;
+	for (let k = 0; k < 3 * count && n > 0; k += 3) {
+		const alpha = conditions[k]!;
+		const beta = conditions[k + 1]!;
+		const gamma = conditions[k + 2]!;
+		const q2 = beta * beta + gamma * gamma - alpha * alpha;
+		if (!(q2 > 0)) {
+			if (alpha >= 0) continue;
+			return 0;
+		}
+		const q = Math.sqrt(q2);
+		const enter = pseudoAngle(-alpha * beta + gamma * q, -alpha * gamma - beta * q);
+		const leave = pseudoAngle(-alpha * beta - gamma * q, -alpha * gamma + beta * q);
+		if (enter <= leave) {
+			if (alpha >= 0 && leave - enter < 1) continue;
+			if (n > 1) n = keepInterval(set, n, enter, leave);
+			else {
+				if (set[0]! < enter) set[0] = enter;
+				if (set[1]! > leave) set[1] = leave;
+				if (!(set[0]! < set[1]!)) return 0;
+			}
+		} else {
+			if (alpha < 0 && enter - leave < 1) return 0;
+			if (n > 1) n = subtractInterval(set, n, leave, enter);
+			else if (enter > set[0]! && leave < set[1]!) {
+				if (set[0]! < leave) {
+					if (set[1]! > enter) {
+						set[3] = set[1]!;
+						set[2] = enter;
+						n = 2;
+					}
+					set[1] = leave;
+				} else if (set[1]! > enter) set[0] = enter;
+				else return 0;
+			}
+		}
 	}
-	if (alpha < 0 && enter - leave < 1) return 0;
-	return subtractInterval(set, n, leave, enter);
+	return n;
 }
 
 /** Takes a set `other` of m intervals out of a set. */

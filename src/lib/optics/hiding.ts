@@ -1,6 +1,7 @@
 import type { Rings } from './rings';
+import { EYE_X, EYE_Y, EYE_Z, TO_CURTAIN_X, TO_CURTAIN_Y, WALL_STRIDE } from './sight-numbers';
 import { cornersOf, planeDistance, PLANE_TOLERANCE_M } from './sheet';
-import type { Curtain, Eye, Sheet } from './site';
+import type { Eye, Sheet } from './site';
 import type { Vector } from './vector';
 
 /** A wall's part in what an eye sees of a curtain, whatever the sun. */
@@ -59,54 +60,58 @@ export function hidingOf({
 }
 
 /**
- * Keeps of a set the directions in which a wall stands before a curtain, seen from an eye in neither
- * plane: within the wall's four edges, and nearer than the curtain,
+ * Sets the conditions under which a wall stands before a curtain, seen from an eye in neither plane:
+ * within the wall's four edges, and nearer than the curtain,
  * delta_curtain (m_wall . d) > delta_wall (m_curtain . d).
  *
- * @param set n intervals of the ring of curtain c
- * @param slack how far the sun may be away, radians: above 0 keeps only what no such sun takes away,
- * below 0 all that any such sun would keep
- * @returns the new number of intervals
+ * @param rings receives the conditions on the ring of curtain c
+ * @param walls numbers of all walls (see wallNumbers), @param w which wall
+ * @param views numbers of all eyes and curtains (see Sight), @param view where those of this pair begin
+ * @param slack how far the sun may be away, radians: above 0 leaves only what is hidden from all such
+ * suns, below 0 what is hidden from any
+ * @returns the number of conditions
  */
-export function keepHidden(
-	set: Float64Array,
-	n: number,
+export function setHiding(
 	rings: Rings,
 	c: number,
-	curtain: Curtain,
-	wall: Sheet,
-	eye: Eye,
+	walls: Float64Array,
+	w: number,
+	views: Float64Array,
+	view: number,
 	slack: number
 ): number {
-	const wallOffset = wall.acrossX * (wall.x - eye.x) + wall.acrossY * (wall.y - eye.y);
-	const away = Math.abs(wallOffset);
-	const mx = wallOffset < 0 ? -wall.acrossX : wall.acrossX;
-	const my = wallOffset < 0 ? -wall.acrossY : wall.acrossY;
-	const left = wall.alongX * (eye.x - wall.x) + wall.alongY * (eye.y - wall.y);
-	const right = wall.widthM - left;
-	const aside = away * wall.alongX;
-	const asideY = away * wall.alongY;
-	// m and along are at right angles and of length 1, so |left m + away along| is the root of squares.
-	const away2 = away * away;
-	let room = slack === 0 ? 0 : -slack * Math.sqrt(left * left + away2);
-	let kept = rings.keep(set, n, c, left * mx + aside, left * my + asideY, 0, room);
-	if (kept === 0) return 0;
-	if (slack !== 0) room = -slack * Math.sqrt(right * right + away2);
-	kept = rings.keep(set, kept, c, right * mx - aside, right * my - asideY, 0, room);
-	if (kept === 0) return 0;
-	const above = wall.topM - eye.z;
-	if (slack !== 0) room = -slack * Math.sqrt(above * above + away2);
-	kept = rings.keep(set, kept, c, above * mx, above * my, -away, room);
-	if (kept === 0) return 0;
-	const below = eye.z - wall.bottomM;
-	if (slack !== 0) room = -slack * Math.sqrt(below * below + away2);
-	kept = rings.keep(set, kept, c, below * mx, below * my, away, room);
-	if (kept === 0) return 0;
-	const offset = curtain.acrossX * (curtain.x - eye.x) + curtain.acrossY * (curtain.y - eye.y);
-	const curtainAway = Math.abs(offset);
-	const nearer = offset < 0 ? -away : away;
-	const gx = curtainAway * mx - nearer * curtain.acrossX;
-	const gy = curtainAway * my - nearer * curtain.acrossY;
-	if (slack !== 0) room = -slack * Math.sqrt(gx * gx + gy * gy);
-	return rings.keep(set, kept, c, gx, gy, 0, room);
+	const at = w * WALL_STRIDE;
+	const alongX = walls[at + 2]!;
+	const alongY = walls[at + 3]!;
+	const toWallX = walls[at]! - views[view + EYE_X]!;
+	const toWallY = walls[at + 1]! - views[view + EYE_Y]!;
+	const wallOffset = alongX * toWallY - alongY * toWallX;
+	const away = wallOffset < 0 ? -wallOffset : wallOffset;
+	const mx = wallOffset < 0 ? alongY : -alongY;
+	const my = wallOffset < 0 ? -alongX : alongX;
+	const left = -(alongX * toWallX + alongY * toWallY);
+	const right = walls[at + 4]! - left;
+	const below = views[view + EYE_Z]! - walls[at + 5]!;
+	const above = walls[at + 6]! - views[view + EYE_Z]!;
+	const asideX = away * alongX;
+	const asideY = away * alongY;
+	const curtainAway = views[view]!;
+	const gx = curtainAway * mx - away * views[view + TO_CURTAIN_X]!;
+	const gy = curtainAway * my - away * views[view + TO_CURTAIN_Y]!;
+	let [roomLeft, roomRight, roomBelow, roomAbove, roomNearer] = [0, 0, 0, 0, 0];
+	if (slack !== 0) {
+		// m and along are at right angles and of length 1, so |left m + away along| is the root of squares.
+		const away2 = away * away;
+		roomLeft = -slack * Math.sqrt(left * left + away2);
+		roomRight = -slack * Math.sqrt(right * right + away2);
+		roomBelow = -slack * Math.sqrt(below * below + away2);
+		roomAbove = -slack * Math.sqrt(above * above + away2);
+		roomNearer = -slack * Math.sqrt(gx * gx + gy * gy);
+	}
+	rings.require(0, c, left * mx + asideX, left * my + asideY, 0, roomLeft);
+	rings.require(1, c, right * mx - asideX, right * my - asideY, 0, roomRight);
+	rings.require(2, c, above * mx, above * my, -away, roomAbove);
+	rings.require(3, c, below * mx, below * my, away, roomBelow);
+	rings.require(4, c, gx, gy, 0, roomNearer);
+	return 5;
 }

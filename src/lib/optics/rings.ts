@@ -1,9 +1,11 @@
-import { clipHalfPlane } from './arc-set';
 import type { RingFrame } from './ring';
 import type { Curtain } from './site';
 
 /** Numbers kept for each ring. */
-export const RING_STRIDE = 16;
+export const RING_STRIDE = 14;
+
+/** Conditions that one curtain or wall can set. */
+const MOST_CONDITIONS = 6;
 
 /**
  * The rings of bow of several curtains about one sun: d(phi) = axis cos rho + (up cos phi + right sin phi)
@@ -15,6 +17,10 @@ export const RING_STRIDE = 16;
  */
 export class Rings {
 	readonly parts: Float64Array;
+	/** Conditions on a ring, as `clipAll` takes them. */
+	readonly conditions = new Float64Array(3 * MOST_CONDITIONS);
+	/** Unit vector to the sun. */
+	readonly sun = new Float64Array(3);
 	private readonly curtains: readonly Curtain[];
 
 	constructor(curtains: readonly Curtain[]) {
@@ -23,8 +29,11 @@ export class Rings {
 	}
 
 	/** Lays the rings about a sun. */
-	set({ axis, up, right }: RingFrame): void {
+	set({ sun, axis, up, right }: RingFrame): void {
 		const { parts } = this;
+		this.sun[0] = sun.x;
+		this.sun[1] = sun.y;
+		this.sun[2] = sun.z;
 		for (let c = 0; c < this.curtains.length; c++) {
 			const { cosRadius, sinRadius, acrossX, acrossY, alongX, alongY } = this.curtains[c]!;
 			const at = c * RING_STRIDE;
@@ -46,27 +55,14 @@ export class Rings {
 	}
 
 	/**
-	 * Keeps of a set of n intervals the directions of ring c with g . d + room >= 0.
-	 * @returns the new number of intervals
+	 * Makes condition k the directions of ring c with g . d + room >= 0.
+	 * @returns nothing: the condition stands in `conditions`
 	 */
-	keep(
-		set: Float64Array,
-		n: number,
-		c: number,
-		gx: number,
-		gy: number,
-		gz: number,
-		room: number
-	): number {
-		if (n === 0) return 0;
-		const { parts } = this;
+	require(k: number, c: number, gx: number, gy: number, gz: number, room: number): void {
+		const { parts, conditions } = this;
 		const at = c * RING_STRIDE;
-		return clipHalfPlane(
-			set,
-			n,
-			gx * parts[at]! + gy * parts[at + 1]! + gz * parts[at + 2]! + room,
-			gx * parts[at + 3]! + gy * parts[at + 4]! + gz * parts[at + 5]!,
-			gx * parts[at + 6]! + gy * parts[at + 7]!
-		);
+		conditions[3 * k] = gx * parts[at]! + gy * parts[at + 1]! + gz * parts[at + 2]! + room;
+		conditions[3 * k + 1] = gx * parts[at + 3]! + gy * parts[at + 4]! + gz * parts[at + 5]!;
+		conditions[3 * k + 2] = gx * parts[at + 6]! + gy * parts[at + 7]!;
 	}
 }

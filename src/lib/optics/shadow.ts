@@ -1,6 +1,7 @@
 import type { Rings } from './rings';
+import { EYE_X, EYE_Y, EYE_Z, TO_CURTAIN_X, TO_CURTAIN_Y, WALL_STRIDE } from './sight-numbers';
 import { planeDistance } from './sheet';
-import type { Curtain, Eye, Sheet } from './site';
+import type { Sheet } from './site';
 import type { Vector } from './vector';
 
 /** A wall this near to edge-on to the sun (sine of the angle) casts no shadow of any width. */
@@ -49,90 +50,98 @@ export function mayShade(
 }
 
 /**
- * Keeps of a set the directions in which a curtain lies in a wall's shadow.
+ * Sets the conditions under which a curtain lies in a wall's shadow, seen from an eye.
  *
  * P = E + t d lies in the shadow when it lies between the two upright planes through the wall's ends
  * along the sun's direction, between the planes through its upper and lower edge along the sun's
  * direction, and on the shaded side of the wall. Each is linear in P, and P is linear in d once its
  * denominator m . d > 0 is multiplied out.
  *
- * @param set n intervals of the ring of curtain c
- * @param slack how far the sun may be away, radians: above 0 keeps only what no such sun takes away,
- * below 0 all that any such sun would keep. Here the vectors g turn with the sun as well, by at most
+ * @param rings receives the conditions on the ring of curtain c, and knows the sun
+ * @param walls numbers of all walls (see wallNumbers), @param w which wall
+ * @param views numbers of all eyes and curtains (see Sight), @param view where those of this pair begin
+ * @param slack how far the sun may be away, radians: above 0 leaves only what is shaded from all such
+ * suns, below 0 what is shaded from any. Here the vectors g turn with the sun as well, by at most
  * `turning` (or `climbing`) for a radian, which is added to the length of g.
- * @returns the new number of intervals
+ * @returns the number of conditions; -1 when nothing is shaded
  */
-export function keepShaded(
-	set: Float64Array,
-	n: number,
+export function setShading(
 	rings: Rings,
 	c: number,
-	curtain: Curtain,
-	wall: Sheet,
-	eye: Eye,
-	sun: Vector,
+	walls: Float64Array,
+	w: number,
+	views: Float64Array,
+	view: number,
 	slack: number
 ): number {
-	const toSun = wall.acrossX * sun.x + wall.acrossY * sun.y;
-	const facing = Math.abs(toSun);
-	const reach = Math.abs(slack);
+	const at = w * WALL_STRIDE;
+	const sunX = rings.sun[0]!;
+	const sunY = rings.sun[1]!;
+	const sunZ = rings.sun[2]!;
+	const alongX = walls[at + 2]!;
+	const alongY = walls[at + 3]!;
+	const toSun = alongX * sunY - alongY * sunX;
+	const facing = toSun < 0 ? -toSun : toSun;
+	const reach = slack < 0 ? -slack : slack;
 	// For the eye (slack above 0) a shadow that may vanish is none.
-	if (slack > 0 ? facing <= reach : facing + reach < EDGE_ON) return 0;
-	const offset = curtain.acrossX * (curtain.x - eye.x) + curtain.acrossY * (curtain.y - eye.y);
-	const away = Math.abs(offset);
-	const mx = offset < 0 ? -curtain.acrossX : curtain.acrossX;
-	const my = offset < 0 ? -curtain.acrossY : curtain.acrossY;
-	const half = wall.widthM / 2;
-	const fromMiddleX = eye.x - wall.x - wall.alongX * half;
-	const fromMiddleY = eye.y - wall.y - wall.alongY * half;
-	// Level, across the sun's direction: (-sun.y, sun.x).
-	const across = sun.x * fromMiddleY - sun.y * fromMiddleX;
+	if (slack > 0 ? facing <= reach : facing + reach < EDGE_ON) return -1;
+	const away = views[view]!;
+	const mx = views[view + TO_CURTAIN_X]!;
+	const my = views[view + TO_CURTAIN_Y]!;
+	const half = walls[at + 4]! / 2;
+	const fromX = views[view + EYE_X]! - walls[at]!;
+	const fromY = views[view + EYE_Y]! - walls[at + 1]!;
+	const fromMiddleX = fromX - alongX * half;
+	const fromMiddleY = fromY - alongY * half;
+	// Level, across the sun's direction: (-sunY, sunX).
+	const across = sunX * fromMiddleY - sunY * fromMiddleX;
 	const width = half * facing;
-	let turning = 0;
+	const leftX = (width - across) * mx + away * sunY;
+	const leftY = (width - across) * my - away * sunX;
+	const rightX = (width + across) * mx - away * sunY;
+	const rightY = (width + across) * my + away * sunX;
+	let roomLeft = 0;
+	let roomRight = 0;
 	if (slack !== 0) {
 		const fromMiddle = Math.sqrt(fromMiddleX * fromMiddleX + fromMiddleY * fromMiddleY);
-		turning = fromMiddle + away + half;
+		const turning = fromMiddle + away + half;
+		roomLeft = -slack * (Math.sqrt(leftX * leftX + leftY * leftY) + turning);
+		roomRight = -slack * (Math.sqrt(rightX * rightX + rightY * rightY) + turning);
 	}
-	let gx = (width - across) * mx + away * sun.y;
-	let gy = (width - across) * my - away * sun.x;
-	let room = slack === 0 ? 0 : -slack * (Math.sqrt(gx * gx + gy * gy) + turning);
-	let kept = rings.keep(set, n, c, gx, gy, 0, room);
-	if (kept === 0) return 0;
-	gx = (width + across) * mx - away * sun.y;
-	gy = (width + across) * my + away * sun.x;
-	if (slack !== 0) room = -slack * (Math.sqrt(gx * gx + gy * gy) + turning);
-	kept = rings.keep(set, kept, c, gx, gy, 0, room);
-	if (kept === 0) return 0;
-	const above = wall.topM - eye.z;
+	rings.require(0, c, leftX, leftY, 0, roomLeft);
+	rings.require(1, c, rightX, rightY, 0, roomRight);
+	const above = walls[at + 6]! - views[view + EYE_Z]!;
 	if (facing <= reach) {
 		// Which side is shaded is not certain, the upper edge of any shadow is: the wall's own top.
-		if (!(sun.z > reach)) return kept;
-		room = -slack * Math.sqrt(above * above + away * away);
-		return rings.keep(set, kept, c, above * mx, above * my, -away, room);
+		if (!(sunZ > reach)) return 2;
+		const roomTop = -slack * Math.sqrt(above * above + away * away);
+		rings.require(2, c, above * mx, above * my, -away, roomTop);
+		return 3;
 	}
 	// Sunward: the wall's plane lies ahead of P along the sun's direction.
-	const sx = toSun < 0 ? -wall.acrossX : wall.acrossX;
-	const sy = toSun < 0 ? -wall.acrossY : wall.acrossY;
-	const ahead = sx * (wall.x - eye.x) + sy * (wall.y - eye.y);
+	const sx = toSun < 0 ? alongY : -alongY;
+	const sy = toSun < 0 ? -alongX : alongX;
+	const ahead = -(sx * fromX + sy * fromY);
 	const aheadX = ahead * mx - away * sx;
 	const aheadY = ahead * my - away * sy;
-	if (slack !== 0) room = -slack * Math.sqrt(aheadX * aheadX + aheadY * aheadY);
-	kept = rings.keep(set, kept, c, aheadX, aheadY, 0, room);
-	if (kept === 0) return 0;
-	const climbing = slack === 0 ? 0 : 2 * away + Math.abs(ahead);
+	const below = views[view + EYE_Z]! - walls[at + 5]!;
 	const gz = facing * away;
-	gx = facing * above * mx - sun.z * aheadX;
-	gy = facing * above * my - sun.z * aheadY;
+	const upX = facing * above * mx - sunZ * aheadX;
+	const upY = facing * above * my - sunZ * aheadY;
+	const downX = facing * below * mx + sunZ * aheadX;
+	const downY = facing * below * my + sunZ * aheadY;
+	let roomAhead = 0;
+	let roomUp = 0;
+	let roomDown = 0;
 	if (slack !== 0) {
-		room = -slack * (Math.sqrt(gx * gx + gy * gy + gz * gz) + climbing + Math.abs(above));
+		const climbing = 2 * away + Math.abs(ahead);
+		roomAhead = -slack * Math.sqrt(aheadX * aheadX + aheadY * aheadY);
+		roomUp = -slack * (Math.sqrt(upX * upX + upY * upY + gz * gz) + climbing + Math.abs(above));
+		roomDown =
+			-slack * (Math.sqrt(downX * downX + downY * downY + gz * gz) + climbing + Math.abs(below));
 	}
-	kept = rings.keep(set, kept, c, gx, gy, -gz, room);
-	if (kept === 0) return 0;
-	const below = eye.z - wall.bottomM;
-	gx = facing * below * mx + sun.z * aheadX;
-	gy = facing * below * my + sun.z * aheadY;
-	if (slack !== 0) {
-		room = -slack * (Math.sqrt(gx * gx + gy * gy + gz * gz) + climbing + Math.abs(below));
-	}
-	return rings.keep(set, kept, c, gx, gy, gz, room);
+	rings.require(2, c, aheadX, aheadY, 0, roomAhead);
+	rings.require(3, c, upX, upY, -gz, roomUp);
+	rings.require(4, c, downX, downY, gz, roomDown);
+	return 5;
 }

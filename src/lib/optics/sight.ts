@@ -1,10 +1,11 @@
 import { DEG_PER_RAD } from './angles';
-import { clipHalfPlane, fillRing, hullOf, measureSet, subtractSet, uniteSet } from './arc-set';
-import { HIDES_ALL, hidingOf, keepHidden, MAY_HIDE } from './hiding';
+import { clipAll, fillRing, hullOf, measureSet, subtractSet, uniteSet } from './arc-set';
+import { HIDES_ALL, hidingOf, MAY_HIDE, setHiding } from './hiding';
 import type { RingFrame } from './ring';
 import { RING_STRIDE, Rings } from './rings';
-import { keepShaded, mayShade } from './shadow';
-import { cornersOf, inOnePlane, PLANE_TOLERANCE_M } from './sheet';
+import { mayShade, setShading } from './shadow';
+import { cornersOf, inOnePlane } from './sheet';
+import { setView, VIEW_STRIDE, wallNumbers } from './sight-numbers';
 import type { Curtain, Eye, Sheet, Site } from './site';
 import type { Vector } from './vector';
 
@@ -18,13 +19,6 @@ export const EXACT = 0;
 export const AT_LEAST = -1;
 export const AT_MOST = 1;
 export type Surety = typeof EXACT | typeof AT_LEAST | typeof AT_MOST;
-
-/**
- * Numbers kept for each eye and curtain: the eye's distance from the curtain's plane (0 when it stands
- * in it); the distances from its left, right, lower and upper edge along the plane, signed by the side
- * of the plane that the eye is on; and the length of each edge's vector g.
- */
-const VIEW_STRIDE = 9;
 
 /** Pieces of the ring that a wall's five conditions can leave: far fewer fit on a ring. */
 const WALL_ROOM = 64;
@@ -59,7 +53,9 @@ export class Sight {
 	readonly enabledCurtains: readonly number[];
 	private readonly curtains: readonly Curtain[];
 	private readonly corners: readonly (readonly Vector[])[];
-	private readonly walls: readonly Sheet[];
+	private readonly wallSheets: readonly Sheet[];
+	private readonly wallCount: number;
+	private readonly walls: Float64Array;
 	private readonly rings: Rings;
 	private readonly views: Float64Array;
 	/** For each curtain and wall: in one plane. */
@@ -68,8 +64,8 @@ export class Sight {
 	private readonly hiding: Uint8Array;
 	/** For each curtain and wall: a shadow may fall on the curtain under the present sun. */
 	private readonly shading: Uint8Array;
-	private sun: Vector = { x: 0, y: 0, z: 1 };
-	private reach = 0;
+	// A broken number from the start: the field then never changes its kind.
+	private reach = 0.5;
 	private readonly inCurtain: Float64Array;
 	private readonly ofWall = new Float64Array(WALL_ROOM);
 	private readonly inAny: Float64Array;
@@ -79,21 +75,25 @@ export class Sight {
 		this.enabledCurtains = site.curtains.flatMap(({ enabled }, i) => (enabled ? [i] : []));
 		this.curtains = this.enabledCurtains.map((i) => site.curtains[i]!);
 		this.corners = this.curtains.map(cornersOf);
-		this.walls = site.walls;
+		this.wallSheets = site.walls;
+		this.wallCount = site.walls.length;
+		this.walls = wallNumbers(site.walls);
 		this.rings = new Rings(this.curtains);
-		const pairs = this.curtains.length * this.walls.length;
+		const pairs = this.curtains.length * this.wallCount;
 		this.coplanar = new Uint8Array(pairs);
 		this.hiding = new Uint8Array(pairs * eyes.length);
 		this.shading = new Uint8Array(pairs);
 		this.views = new Float64Array(this.curtains.length * eyes.length * VIEW_STRIDE);
 		// A curtain leaves at most 5 pieces of the ring, and a wall cuts each at most 5 times twice.
-		const most = 2 * (8 + 12 * this.walls.length);
+		const most = 2 * (8 + 12 * this.wallCount);
 		this.inCurtain = new Float64Array(most);
 		this.inAny = new Float64Array(most * Math.max(1, this.curtains.length));
 		this.curtains.forEach((curtain, c) => {
-			eyes.forEach((eye, e) => this.placeEye(e, eye, c, curtain));
-			this.walls.forEach((wall, w) => {
-				const pair = c * this.walls.length + w;
+			eyes.forEach((eye, e) => {
+				setView(this.views, (e * this.curtains.length + c) * VIEW_STRIDE, eye, curtain);
+			});
+			site.walls.forEach((wall, w) => {
+				const pair = c * site.walls.length + w;
 				if (inOnePlane(curtain, wall)) this.coplanar[pair] = 1;
 				else
 					eyes.forEach((eye, e) => {
@@ -103,34 +103,19 @@ export class Sight {
 		});
 	}
 
-	private placeEye(e: number, eye: Eye, c: number, curtain: Curtain): void {
-		const offset = curtain.acrossX * (curtain.x - eye.x) + curtain.acrossY * (curtain.y - eye.y);
-		const away = Math.abs(offset);
-		const side = offset < 0 ? -1 : 1;
-		const left = curtain.alongX * (eye.x - curtain.x) + curtain.alongY * (eye.y - curtain.y);
-		const edges = [left, curtain.widthM - left, eye.z - curtain.bottomM, curtain.topM - eye.z];
-		const at = (e * this.curtains.length + c) * VIEW_STRIDE;
-		this.views[at] = away < PLANE_TOLERANCE_M ? 0 : away;
-		edges.forEach((distance, i) => {
-			this.views[at + 1 + i] = distance * side;
-			this.views[at + 5 + i] = Math.hypot(distance, away);
-		});
-	}
-
 	/**
 	 * Sets the sun.
 	 * @param frame the ring's frame about the sun's position
 	 * @param reachRad how far the sun may be from there, for arcs asked as AT_LEAST and AT_MOST
 	 */
 	setSun(frame: RingFrame, reachRad = 0): void {
-		this.sun = frame.sun;
 		this.reach = reachRad;
 		this.rings.set(frame);
 		for (let c = 0, pair = 0; c < this.curtains.length; c++) {
-			for (let w = 0; w < this.walls.length; w++, pair++) {
+			for (let w = 0; w < this.wallCount; w++, pair++) {
 				const shades =
 					this.coplanar[pair] === 0 &&
-					mayShade(this.walls[w]!, this.corners[c]!, frame.sun, reachRad);
+					mayShade(this.wallSheets[w]!, this.corners[c]!, frame.sun, reachRad);
 				this.shading[pair] = shades ? 1 : 0;
 			}
 		}
@@ -156,69 +141,59 @@ export class Sight {
 
 	/** Fills `inCurtain` with what an eye sees in curtain c; returns the number of intervals. */
 	private see(e: number, c: number, surety: Surety): number {
-		const { views } = this;
+		const { views, rings } = this;
 		const view = (e * this.curtains.length + c) * VIEW_STRIDE;
 		const away = views[view]!;
 		if (away === 0) return 0;
 		const slack = surety * this.reach;
-		const ring = this.rings.parts;
+		const { parts, conditions } = rings;
 		const at = c * RING_STRIDE;
-		const m0 = ring[at + 8]!;
-		const m1 = ring[at + 9]!;
-		const m2 = ring[at + 10]!;
-		const e0 = ring[at + 11]! * away;
-		const e1 = ring[at + 12]! * away;
-		const e2 = ring[at + 13]! * away;
+		const m0 = parts[at + 8]!;
+		const m1 = parts[at + 9]!;
+		const m2 = parts[at + 10]!;
+		const e0 = parts[at + 11]! * away;
+		const e1 = parts[at + 12]! * away;
+		const e2 = parts[at + 13]! * away;
+		const z0 = parts[at + 2]! * away;
+		const z1 = parts[at + 5]! * away;
 		const left = views[view + 1]!;
 		const right = views[view + 2]!;
-		const set = this.inCurtain;
-		let n = fillRing(set);
-		let room = slack * views[view + 5]!;
-		n = clipHalfPlane(set, n, left * m0 + e0 + room, left * m1 + e1, left * m2 + e2);
-		if (n === 0) return 0;
-		room = slack * views[view + 6]!;
-		n = clipHalfPlane(set, n, right * m0 - e0 + room, right * m1 - e1, right * m2 - e2);
-		if (n === 0) return 0;
-		const z0 = ring[at + 2]! * away;
-		const z1 = ring[at + 5]! * away;
 		const below = views[view + 3]!;
-		room = slack * views[view + 7]!;
-		n = clipHalfPlane(set, n, below * m0 + z0 + room, below * m1 + z1, below * m2);
-		if (n === 0) return 0;
 		const above = views[view + 4]!;
-		room = slack * views[view + 8]!;
-		n = clipHalfPlane(set, n, above * m0 - z0 + room, above * m1 - z1, above * m2);
-		return n === 0 || this.walls.length === 0 ? n : this.seePastWalls(e, c, n, slack);
+		conditions[0] = left * m0 + e0 + slack * views[view + 5]!;
+		conditions[1] = left * m1 + e1;
+		conditions[2] = left * m2 + e2;
+		conditions[3] = right * m0 - e0 + slack * views[view + 6]!;
+		conditions[4] = right * m1 - e1;
+		conditions[5] = right * m2 - e2;
+		conditions[6] = below * m0 + z0 + slack * views[view + 7]!;
+		conditions[7] = below * m1 + z1;
+		conditions[8] = below * m2;
+		conditions[9] = above * m0 - z0 + slack * views[view + 8]!;
+		conditions[10] = above * m1 - z1;
+		conditions[11] = above * m2;
+		const n = clipAll(this.inCurtain, fillRing(this.inCurtain), conditions, 4);
+		return n === 0 || this.wallCount === 0 ? n : this.seePastWalls(e, c, view, n, slack);
 	}
 
 	/** Takes out of `inCurtain` what walls hide or shade of it. */
-	private seePastWalls(e: number, c: number, seen: number, slack: number): number {
-		const { walls, hiding, shading, ofWall, rings } = this;
-		const curtain = this.curtains[c]!;
-		const eye = this.eyes[e]!;
+	private seePastWalls(e: number, c: number, view: number, seen: number, slack: number): number {
+		const { wallCount, walls, hiding, shading, ofWall, rings, views } = this;
 		const set = this.inCurtain;
 		const ofEye = e * shading.length;
 		let n = seen;
-		for (let w = 0; w < walls.length && n > 0; w++) {
-			const pair = c * walls.length + w;
+		for (let w = 0, pair = c * wallCount; w < wallCount && n > 0; w++, pair++) {
 			const hides = hiding[ofEye + pair]!;
 			if (hides === HIDES_ALL) return 0;
 			if (hides === MAY_HIDE) {
-				const m = keepHidden(
-					ofWall,
-					hullOf(ofWall, set, n),
-					rings,
-					c,
-					curtain,
-					walls[w]!,
-					eye,
-					slack
-				);
+				const count = setHiding(rings, c, walls, w, views, view, slack);
+				const m = clipAll(ofWall, hullOf(ofWall, set, n), rings.conditions, count);
 				if (m > 0) n = subtractSet(set, n, ofWall, m);
 			}
 			if (shading[pair] === 1 && n > 0) {
-				const hull = hullOf(ofWall, set, n);
-				const m = keepShaded(ofWall, hull, rings, c, curtain, walls[w]!, eye, this.sun, slack);
+				const count = setShading(rings, c, walls, w, views, view, slack);
+				if (count < 0) continue;
+				const m = clipAll(ofWall, hullOf(ofWall, set, n), rings.conditions, count);
 				if (m > 0) n = subtractSet(set, n, ofWall, m);
 			}
 		}
