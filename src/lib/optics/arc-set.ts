@@ -15,6 +15,8 @@
 export const RING_START = -2;
 export const RING_END = 2;
 
+const QUARTER_PI = Math.PI / 4;
+
 /** The pseudo-angle of a vector of any length above 0. */
 function pseudoAngle(c: number, s: number): number {
 	const p = s / (Math.abs(c) + Math.abs(s));
@@ -22,10 +24,14 @@ function pseudoAngle(c: number, s: number): number {
 	return s >= 0 ? 2 - p : -2 - p;
 }
 
-/** The angle phi in radians, -pi to pi, of a pseudo-angle. */
+/**
+ * The angle phi in radians, -pi to pi, of a pseudo-angle. For p from 0 to 1 it is the angle of the vector
+ * (1 - p, p), that is pi/4 + atan(2 p - 1); from 1 to 2 the mirror image of that.
+ */
 export function angleOfPseudo(p: number): number {
-	const size = Math.abs(p);
-	const angle = size <= 1 ? Math.atan2(size, 1 - size) : Math.atan2(2 - size, 1 - size);
+	const size = p < 0 ? -p : p;
+	const angle =
+		size <= 1 ? QUARTER_PI + Math.atan(2 * size - 1) : 3 * QUARTER_PI + Math.atan(2 * size - 3);
 	return p < 0 ? -angle : angle;
 }
 
@@ -33,6 +39,13 @@ export function angleOfPseudo(p: number): number {
 export function fillRing(set: Float64Array): number {
 	set[0] = RING_START;
 	set[1] = RING_END;
+	return 1;
+}
+
+/** Makes a set the least single interval that holds another of n intervals, n above 0. */
+export function hullOf(set: Float64Array, other: Float64Array, n: number): number {
+	set[0] = other[0]!;
+	set[1] = other[2 * n - 1]!;
 	return 1;
 }
 
@@ -82,34 +95,65 @@ function keepInterval(set: Float64Array, n: number, lo: number, hi: number): num
 }
 
 /**
- * Keeps of a set the phi with alpha + beta cos phi + gamma sin phi >= 0.
+ * Keeps of a set the phi with alpha + beta cos phi + gamma sin phi >= 0 for each of several conditions.
  *
- * The test changes sign where the line alpha + beta c + gamma s = 0 cuts the unit circle, at
+ * A test changes sign where the line alpha + beta c + gamma s = 0 cuts the unit circle, at
  * (-alpha (beta, gamma) +- q (gamma, -beta)) / r^2 with r^2 = beta^2 + gamma^2, q^2 = r^2 - alpha^2; the
  * pseudo-angle needs no division by r^2. A line that touches the circle, or misses it by rounding,
  * keeps all or nothing, whichever side it is on; a sliver of rounding is never taken for its
  * complement, since an interval with alpha >= 0 spans at least half of the ring and one with alpha < 0
  * at most half.
+ *
+ * The conditions come in an array and a set of one interval is cut in place, because numbers handed to
+ * functions one by one are boxed, which costs more here than the arithmetic.
+ *
+ * @param conditions alpha, beta, gamma of each, one after the other
+ * @param count how many there are
  */
-export function clipHalfPlane(
+export function clipAll(
 	set: Float64Array,
-	n: number,
-	alpha: number,
-	beta: number,
-	gamma: number
+	intervals: number,
+	conditions: Float64Array,
+	count: number
 ): number {
-	const r2 = beta * beta + gamma * gamma;
-	const q2 = r2 - alpha * alpha;
-	if (!(q2 > 0)) return alpha >= 0 ? n : 0;
-	const q = Math.sqrt(q2);
-	const enter = pseudoAngle(-alpha * beta + gamma * q, -alpha * gamma - beta * q);
-	const leave = pseudoAngle(-alpha * beta - gamma * q, -alpha * gamma + beta * q);
-	if (enter <= leave) {
-		if (alpha >= 0 && leave - enter < 1) return n;
-		return keepInterval(set, n, enter, leave);
+	let n = intervals;
+	for (let k = 0; k < 3 * count && n > 0; k += 3) {
+		const alpha = conditions[k]!;
+		const beta = conditions[k + 1]!;
+		const gamma = conditions[k + 2]!;
+		const q2 = beta * beta + gamma * gamma - alpha * alpha;
+		if (!(q2 > 0)) {
+			if (alpha >= 0) continue;
+			return 0;
+		}
+		const q = Math.sqrt(q2);
+		const enter = pseudoAngle(-alpha * beta + gamma * q, -alpha * gamma - beta * q);
+		const leave = pseudoAngle(-alpha * beta - gamma * q, -alpha * gamma + beta * q);
+		if (enter <= leave) {
+			if (alpha >= 0 && leave - enter < 1) continue;
+			if (n > 1) n = keepInterval(set, n, enter, leave);
+			else {
+				if (set[0]! < enter) set[0] = enter;
+				if (set[1]! > leave) set[1] = leave;
+				if (!(set[0]! < set[1]!)) return 0;
+			}
+		} else {
+			if (alpha < 0 && enter - leave < 1) return 0;
+			if (n > 1) n = subtractInterval(set, n, leave, enter);
+			else if (enter > set[0]! && leave < set[1]!) {
+				if (set[0]! < leave) {
+					if (set[1]! > enter) {
+						set[3] = set[1]!;
+						set[2] = enter;
+						n = 2;
+					}
+					set[1] = leave;
+				} else if (set[1]! > enter) set[0] = enter;
+				else return 0;
+			}
+		}
 	}
-	if (alpha < 0 && enter - leave < 1) return 0;
-	return subtractInterval(set, n, leave, enter);
+	return n;
 }
 
 /** Takes a set `other` of m intervals out of a set. */
@@ -123,6 +167,10 @@ export function subtractSet(set: Float64Array, n: number, other: Float64Array, m
 
 /** Joins a set `other` of m intervals to a set. */
 export function uniteSet(set: Float64Array, n: number, other: Float64Array, m: number): number {
+	if (n === 0) {
+		for (let k = 0; k < 2 * m; k++) set[k] = other[k]!;
+		return m;
+	}
 	let count = n;
 	for (let j = 0; j < m; j++) {
 		let start = other[2 * j]!;

@@ -1,13 +1,14 @@
 import type { LocalDate } from '../schedule/local-clock';
 import { localDayRange } from '../schedule/local-days';
-import { OpenSearch, ROOT_SPAN_S } from './open-search';
-import { findPeaks } from './peaks';
+import { OpenSearch } from './open-search';
+import { PeakFinder } from './peaks';
 import type { Site, Zone } from './site';
-import { sunTracker } from './sun';
-import { sightOf } from './instant';
 
 /** Shorter gaps are closed, and then shorter windows dropped, seconds. */
 export const LEAST_SPAN_S = 60;
+
+/** Seconds that are searched at a time. */
+const PART_S = 8192;
 
 /** An interval in which a zone is open to the bow. */
 export interface BowWindow {
@@ -35,6 +36,18 @@ interface Span {
 	readonly endS: number;
 }
 
+/** What has been found out of the sky over a zone serves every range of dates that is asked for. */
+const finders = new WeakMap<Zone, { search: OpenSearch; peaks: PeakFinder }>();
+
+function finderOf(site: Site, zone: Zone): { search: OpenSearch; peaks: PeakFinder } {
+	let finder = finders.get(zone);
+	if (!finder) {
+		finder = { search: new OpenSearch(site, zone), peaks: new PeakFinder(site, zone) };
+		finders.set(zone, finder);
+	}
+	return finder;
+}
+
 /**
  * The spans that start within [startS, endS), in order.
  *
@@ -59,9 +72,7 @@ function* openSpans(search: OpenSearch, startS: number, endS: number): Generator
 		}
 		current = null;
 	};
-	const sink = (firstS: number, lastS: number) => {
-		const first = Math.max(firstS, from);
-		if (lastS < first) return;
+	const sink = (first: number, lastS: number) => {
 		if (current && first - current.endS < LEAST_SPAN_S) {
 			current.endS = lastS;
 			return;
@@ -70,13 +81,12 @@ function* openSpans(search: OpenSearch, startS: number, endS: number): Generator
 		current = { startS: first, endS: lastS };
 	};
 	const currentSpan = (): Span | null => current;
-	let rootS = Math.floor(from / ROOT_SPAN_S) * ROOT_SPAN_S;
-	for (; ; rootS += ROOT_SPAN_S) {
+	for (let partS = from; ; partS += PART_S) {
 		const open = currentSpan();
 		// Past the end only a span that started before it is still followed.
-		const followed = open !== null && open.startS < endS && rootS - open.endS < LEAST_SPAN_S;
-		if (rootS >= endS && !followed) break;
-		search.search(rootS, sink);
+		const followed = open !== null && open.startS < endS && partS - open.endS < LEAST_SPAN_S;
+		if (partS >= endS && !followed) break;
+		search.search(partS, partS + PART_S, sink);
 		yield* done.splice(0);
 	}
 	close();
@@ -105,9 +115,7 @@ export function* zoneWindows({
 	to: LocalDate;
 }): Generator<BowWindow> {
 	const { startMs, endMs } = localDayRange({ timeZone: site.clock.timeZone, from, to });
-	const sunAt = sunTracker(site);
-	const sight = sightOf(site, zone);
-	const search = new OpenSearch(site, zone);
+	const { search, peaks } = finderOf(site, zone);
 	for (const { startS, endS } of openSpans(
 		search,
 		Math.ceil(startMs / 1000),
@@ -119,7 +127,7 @@ export function* zoneWindows({
 			date,
 			startMs: startS * 1000,
 			endMs: endS * 1000,
-			...findPeaks({ site, zone, sight, sunAt, startS, endS })
+			...peaks.find(startS, endS)
 		};
 	}
 }

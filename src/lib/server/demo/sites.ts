@@ -1,9 +1,10 @@
+import { setTimeout as wait } from 'node:timers/promises';
 import { addDays, localClock } from '../../schedule';
 import type { Plan } from '../../schemas/plan';
 import { inTenant, type Origin } from '../db/transaction';
 import { listZones, saveProgramme, type PriceWanted } from '../programmes/programmes';
 import { previewProgramme, publishProgramme } from '../programmes/publish';
-import { askForWindows, computeWindows } from '../sites/compute';
+import { askForWindows, computeWindows, demandComputation } from '../sites/compute';
 import { addPlan, makeLive } from '../sites/plans';
 import { changeSite, createSite, demandSite } from '../sites/sites';
 
@@ -52,8 +53,9 @@ export async function makeDemoSite(
 	const computationId = await inTenant(operatorId, origin, (tx) =>
 		askForWindows(tx, siteId, season)
 	);
-	// The worker would do the same; here it need not be waited for.
+	// The worker does the same; whichever comes first, this goes on when it is done.
 	await computeWindows({ operatorId, computationId }, { number: 1, of: 1 });
+	await waitForWindows(operatorId, origin, computationId);
 	const programmeId = await inTenant(operatorId, origin, async (tx) => {
 		const [zone] = await listZones(tx, siteId);
 		return saveProgramme(
@@ -89,4 +91,16 @@ export async function publishDemoProgramme(
 		const { digest } = await previewProgramme(tx, slug, programmeId, now);
 		await publishProgramme(tx, slug, programmeId, digest, now);
 	});
+}
+
+const waitSteps = 600;
+const stepMs = 100;
+
+async function waitForWindows(operatorId: string, origin: Origin, id: string): Promise<void> {
+	for (let step = 0; step < waitSteps; step++) {
+		const { state } = await inTenant(operatorId, origin, (tx) => demandComputation(tx, id));
+		if (state === 'done') return;
+		await wait(stepMs);
+	}
+	throw new Error('the windows of the demo were not computed');
 }

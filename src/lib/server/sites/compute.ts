@@ -98,7 +98,8 @@ async function startComputation(tx: TenantTx, computationId: string): Promise<vo
 
 /**
  * The job: computes in pieces, each stored with the count of days in one transaction, so that the page
- * shows how far it is and a killed worker's successor goes on where it stopped.
+ * shows how far it is, a killed worker's successor goes on where it stopped, and of two that run at once
+ * one stops.
  */
 export async function computeWindows(
 	{ operatorId, computationId }: TaskPayloads['compute_windows'],
@@ -145,6 +146,7 @@ async function computePieces(
 	}: { run: Computation; body: typeof plan.$inferSelect.body; zoneIds: Map<string, string> }
 ): Promise<void> {
 	const site = createOpticsSite(body);
+	let { daysDone } = run;
 	if (run.daysDone < run.daysTotal) {
 		const from = addDays(run.fromDate, run.daysDone);
 		for await (const piece of windowsInPieces({ site, from, to: run.toDate, daysPerPiece: 14 })) {
@@ -161,13 +163,19 @@ async function computePieces(
 					peakArcDeg: window.peakArcDeg
 				}))
 			);
-			await inTenant(operatorId, origin, async (tx) => {
-				if (rows.length > 0) await tx.sql.insert(bowWindow).values(rows);
-				await tx.sql
+			const stored = await inTenant(operatorId, origin, async (tx) => {
+				// Whoever else computes the same has moved the count: then these days are stored already.
+				const mine = await tx.sql
 					.update(computation)
 					.set({ daysDone: run.daysDone + piece.daysDone })
-					.where(eq(computation.id, run.id));
+					.where(and(eq(computation.id, run.id), eq(computation.daysDone, daysDone)))
+					.returning({ id: computation.id });
+				if (mine.length === 0) return false;
+				if (rows.length > 0) await tx.sql.insert(bowWindow).values(rows);
+				return true;
 			});
+			if (!stored) return;
+			daysDone = run.daysDone + piece.daysDone;
 		}
 	}
 	await inTenant(operatorId, origin, (tx) =>
