@@ -94,10 +94,10 @@ test('a person with roles at two operators goes from one to the other', async ({
 	await page.getByText('Open another operator').click();
 	await page.getByLabel('Name of the organisation').fill(second);
 	await page.getByRole('button', { name: 'Open it' }).click();
-	await expect(page.getByRole('link', { name: second })).toBeVisible();
+	await expect(page.getByRole('link', { name: second, exact: true })).toBeVisible();
 	await page.getByRole('link', { name: 'Operators' }).click();
 	await page.getByRole('link', { name: `${first.operatorName} owner`, exact: true }).click();
-	await expect(page.getByRole('heading', { level: 1 })).toHaveText(first.operatorName);
+	await expect(page.getByRole('link', { name: first.operatorName, exact: true })).toBeVisible();
 	await expect(page.getByRole('link', { name: second })).toHaveCount(0);
 });
 
@@ -131,7 +131,7 @@ test('the platform suspends an operator and opens it again', async ({ page, brow
 	await expect(admin.getByRole('status').first()).toContainText('The operator is suspended');
 	expect((await page.goto(desk))?.status()).toBe(403);
 	await expect(page.getByText('is suspended')).toBeVisible();
-	await admin.getByRole('button', { name: `Open again: ${owner.operatorName}` }).click();
+	await admin.getByRole('button', { name: /^Open again/ }).click();
 	await expect(admin.getByRole('status').first()).toContainText('open again');
 	expect((await page.goto(desk))?.status()).toBe(200);
 	await context.close();
