@@ -17,11 +17,11 @@ export function compassWord(azimuthDeg: number): string {
 
 /** How much of the ring an arc is, in words that need no protractor. */
 export function arcWords(arcDeg: number): string {
-	if (arcDeg >= 170) return 'half a circle of bow or more';
-	if (arcDeg >= 110) return 'about a third of a circle of bow';
-	if (arcDeg >= 80) return 'about a quarter of a circle of bow';
-	if (arcDeg >= 55) return 'about a sixth of a circle of bow';
-	return 'a short piece of bow';
+	if (arcDeg >= 170) return 'Half a circle or more';
+	if (arcDeg >= 110) return 'About a third of a circle';
+	if (arcDeg >= 80) return 'About a quarter of a circle';
+	if (arcDeg >= 55) return 'About a sixth of a circle';
+	return 'A short piece';
 }
 
 /** What a visitor sees in a slot, and where to look. */
@@ -32,6 +32,5 @@ export function viewWords({
 	arcDeg: number;
 	lookAzimuthDeg: number;
 }): string {
-	const words = arcWords(arcDeg);
-	return `${words[0]!.toUpperCase()}${words.slice(1)}. Stand with the sun behind you and look ${compassWord(lookAzimuthDeg)}.`;
+	return `${arcWords(arcDeg)} of bow. Stand with the sun behind you and look ${compassWord(lookAzimuthDeg)}.`;
 }

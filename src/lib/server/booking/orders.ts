@@ -1,7 +1,7 @@
 import { and, asc, desc, eq, ilike, lt, or, sql } from 'drizzle-orm';
 import { addToTrail } from '../audit/trail';
 import { demand } from '../auth/rights';
-import { order, orderLine, payment, refund, site, slot, ticket, zone } from '../db/schema';
+import { order, orderLine, payment, refund, site, slot, zone } from '../db/schema';
 import type { TenantTx } from '../db/transaction';
 import { Refusal } from '../failures';
 import { documentsOfOrder } from '../invoicing/documents';
@@ -160,22 +160,4 @@ export async function listOrders(tx: TenantTx, { search, slotId, before, most }:
 		.limit(most + 1);
 	const page = rows.slice(0, most);
 	return { rows: page, next: rows.length > most ? (page.at(-1)?.id ?? null) : null };
-}
-
-/** Who is coming in a slot: orders with how many of their tickets were used. No addresses. */
-export function listComing(tx: TenantTx, slotId: string) {
-	demand(tx, 'orders.read');
-	return tx.sql
-		.select({
-			id: order.id,
-			reference: order.reference,
-			visitorName: order.visitorName,
-			places: order.places,
-			used: sql<number>`(select count(*)::int from ${ticket} t where t.operator_id = ${order.operatorId} and t.order_id = ${order.id} and t.status = 'used')`
-		})
-		.from(order)
-		.where(
-			and(eq(order.operatorId, tx.operatorId), eq(order.slotId, slotId), eq(order.status, 'paid'))
-		)
-		.orderBy(asc(order.visitorName));
 }

@@ -212,7 +212,7 @@ export async function listComputations(tx: TenantTx, siteId: string) {
 			daysDone: computation.daysDone,
 			daysTotal: computation.daysTotal,
 			fault: computation.fault,
-			windows: sql<number>`(select count(*)::int from bow_window w where w.operator_id = ${computation.operatorId} and w.computation_id = ${computation.id})`
+			windows: sql<number>`(select count(*)::int from bow_window w where w.operator_id = computation.operator_id and w.computation_id = computation.id)`
 		})
 		.from(computation)
 		.where(and(eq(computation.operatorId, tx.operatorId), eq(computation.planId, live.id)))

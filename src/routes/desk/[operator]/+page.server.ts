@@ -1,9 +1,10 @@
 import { dayBand } from '$lib/day-band';
+import { groupBy } from '$lib/group-by';
 import { localClock } from '$lib/schedule';
 import { mayRole } from '$lib/server/auth/rights';
 import { inDesk } from '$lib/server/http';
 import { failedRefunds } from '$lib/server/payments/refunds';
-import { listSlots } from '$lib/server/programmes/slots';
+import { listSlots, type ListedSlot } from '$lib/server/programmes/slots';
 import { windowsOfSite } from '$lib/server/sites/compute';
 import { listSites } from '$lib/server/sites/sites';
 import type { PageServerLoad } from './$types';
@@ -40,12 +41,41 @@ export const load: PageServerLoad = (event) =>
 		);
 		return {
 			days,
-			toDecide: mayRole(role, 'weather.decide')
-				? slots.filter(
-						({ status, suggestion }) =>
-							status !== 'called_off' && (suggestion === 'call_off' || suggestion === 'wait')
-					)
-				: [],
+			toDecide: mayRole(role, 'weather.decide') ? doubts(slots) : [],
 			failed: mayRole(role, 'orders.write') ? await failedRefunds(tx) : []
 		};
 	});
+
+interface Doubt {
+	site: string;
+	localDate: string;
+	timeZone: string;
+	firstAt: Date;
+	lastAt: Date;
+	slots: number;
+	sold: number;
+	because: string;
+}
+
+/** Slots that the weather watch doubts, by site and day; what is sold first. */
+function doubts(slots: ListedSlot[]): Doubt[] {
+	const doubted = slots.filter(
+		({ status, suggestion }) =>
+			status !== 'called_off' && (suggestion === 'call_off' || suggestion === 'wait')
+	);
+	return groupBy(doubted, ({ site, localDate }) => `${localDate} ${site}`)
+		.map(([, own]) => {
+			const [first, last] = [own[0]!, own.at(-1)!];
+			return {
+				site: first.site,
+				localDate: first.localDate,
+				timeZone: first.timeZone,
+				firstAt: first.startsAt,
+				lastAt: last.endsAt,
+				slots: own.length,
+				sold: own.reduce((sum, { sold }) => sum + sold, 0),
+				because: (own.find(({ sold }) => sold > 0) ?? first).because ?? ''
+			};
+		})
+		.sort((a, b) => Number(b.sold > 0) - Number(a.sold > 0) || +a.firstAt - +b.firstAt);
+}

@@ -12,7 +12,7 @@ import { asVisitor } from '$lib/server/visitor';
 import type { PageServerLoad } from './$types';
 
 /** Days that one page lists. */
-const pageDays = 7;
+const pageDays = 4;
 
 export const load: PageServerLoad = async (event) =>
 	asVisitor(event, async (tx) => {
@@ -52,6 +52,8 @@ export const load: PageServerLoad = async (event) =>
 			},
 			next: dates[pageDays] ?? null,
 			isFirst: from === today,
+			/** Then they are said once. */
+			samePrices: prices.size <= 1,
 			days: shown.map((date) => {
 				const own = slots.filter(({ localDate }) => localDate === date);
 				return {
