@@ -72,7 +72,14 @@ export async function demoDesk(page: Page): Promise<string> {
 	return (await link.getAttribute('href')) ?? '';
 }
 
+/** Opens the menu under the person's name, which leads to their account and operators. */
+export async function openPersonMenu(page: Page): Promise<void> {
+	const menu = page.getByRole('banner').locator('details');
+	if ((await menu.getAttribute('open')) === null) await menu.locator('summary').click();
+}
+
 export async function signOut(page: Page): Promise<void> {
+	await openPersonMenu(page);
 	await page.getByRole('button', { name: 'Sign out', exact: true }).click();
 	await page.waitForURL('**/sign-in?done=out');
 }

@@ -120,7 +120,7 @@ test('a second step is turned on, asked for, passed by the app or by a recovery 
 	const [recovery = ''] = await codes.allTextContents();
 
 	for (const code of [appCode(key, 1), recovery]) {
-		await page.getByRole('button', { name: 'Sign out', exact: true }).click();
+		await signOut(page);
 		await signIn(page, owner);
 		await expect(page.getByRole('heading', { name: 'Second step' })).toBeVisible();
 		// Half signed in is not in.
