@@ -15,7 +15,19 @@ export default ts.config(
 			// TypeScript itself reports undefined names, with better knowledge.
 			'no-undef': 'off',
 			'@typescript-eslint/no-explicit-any': 'error',
-			'@typescript-eslint/no-unused-vars': ['error', { argsIgnorePattern: '^_' }]
+			'@typescript-eslint/no-unused-vars': [
+				'error',
+				{ argsIgnorePattern: '^_', varsIgnorePattern: '^_' }
+			],
+			'no-restricted-syntax': [
+				'error',
+				{
+					// Drizzle's own would begin and end the transaction that it is called in.
+					selector:
+						"CallExpression[callee.property.name='transaction'][callee.object.property.name='sql']",
+					message: 'Use withSavepoint.'
+				}
+			]
 		}
 	},
 	{

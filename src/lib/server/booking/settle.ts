@@ -1,7 +1,7 @@
 import { and, eq } from 'drizzle-orm';
 import { violates } from '../db/errors';
 import { order, payment } from '../db/schema';
-import { inTenant, type TenantTx } from '../db/transaction';
+import { inTenant, withSavepoint, type TenantTx } from '../db/transaction';
 import type { TaskPayloads } from '../jobs/tasks';
 import { readPaymentAccount } from '../payments/accounts';
 import { endCheckout, readCheckout, type ReceivedPayment } from '../payments/gateway';
@@ -122,7 +122,7 @@ async function tryComplete(
 	now: Date
 ): Promise<'done' | 'no_places' | 'called_off'> {
 	try {
-		await tx.sql.transaction(async (inner) => completeOrder({ ...tx, sql: inner }, found, now));
+		await withSavepoint(tx, () => completeOrder(tx, found, now));
 		return 'done';
 	} catch (error) {
 		if (violates(error, 'slot_places')) return 'no_places';

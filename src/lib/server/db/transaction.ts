@@ -119,6 +119,22 @@ export function inPublic<T>(
 	return open({}, (sql) => run({ sql, actor, requestId, operatorId: null }));
 }
 
+/**
+ * Runs a part of a transaction that may fail without the whole failing: what it did is undone, and its
+ * error thrown on. (Drizzle's own `transaction` would begin and end the outer one.)
+ */
+export async function withSavepoint<T>(tx: TenantTx, run: () => Promise<T>): Promise<T> {
+	await tx.sql.execute('savepoint part');
+	try {
+		const result = await run();
+		await tx.sql.execute('release savepoint part');
+		return result;
+	} catch (error) {
+		await tx.sql.execute('rollback to savepoint part');
+		throw error;
+	}
+}
+
 /** The operator that a public address names, or null. */
 export function findOperatorBySlug(
 	slug: string
