@@ -14,14 +14,23 @@ export interface TestStack extends Stack {
 	home: string;
 }
 
+export interface TestStackOptions {
+	/** Whether the demo is loaded. Default: when the application runs. */
+	demo?: boolean;
+	/** Whether a commit that was answered survives a kill of the database. Default: no, for speed. */
+	durable?: boolean;
+}
+
 /**
- * Starts a throw-away stack for tests: free ports, a fresh cluster without fsync, a folder that
- * vanishes. It runs beside a started application and beside other test runs.
+ * Starts a throw-away stack for tests: free ports, a fresh cluster, a folder that vanishes. It runs beside a started application and beside other test runs.
  *
  * @param application whether web, worker and demo run as well (browser tests) or only what the tests
  *   of the services call (database, mail catcher, doubles).
  */
-export async function startTestStack(application: boolean): Promise<TestStack> {
+export async function startTestStack(
+	application: boolean,
+	{ demo = application, durable = false }: TestStackOptions = {}
+): Promise<TestStack> {
 	const user = serverUser();
 	const under = [os.tmpdir(), '/var/tmp', '/tmp'].find(
 		(place) => existsSync(place) && canPass(place, user)
@@ -46,13 +55,13 @@ export async function startTestStack(application: boolean): Promise<TestStack> {
 			ports: await freePorts(),
 			secrets: newSecrets(),
 			guard,
-			durable: false,
+			durable,
 			application: application ? 'built' : 'none',
 			say: () => {},
 			// The services' own warnings would only stand between the tests' names.
 			logLevel: application ? 'info' : 'fatal'
 		});
-		if (application && hasInProject('src/bin/demo.ts')) await stack.loadDemo();
+		if (demo && hasInProject('src/bin/demo.ts')) await stack.loadDemo();
 		return {
 			...stack,
 			home,
