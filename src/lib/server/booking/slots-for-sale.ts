@@ -1,4 +1,4 @@
-import { and, asc, eq, gt, gte, lte } from 'drizzle-orm';
+import { and, asc, eq, gt, gte, lte, sql } from 'drizzle-orm';
 import { priceCategory, programme, site, slot, zone } from '../db/schema';
 import type { TenantTx } from '../db/transaction';
 
@@ -49,9 +49,37 @@ export function listOpenSites(tx: TenantTx) {
 	});
 }
 
+/** Slots that visitors can see: not begun; and called-off ones too, so that nobody seeks them in vain. */
+function visible(tx: TenantTx, siteId: string, now: Date) {
+	return [
+		eq(slot.operatorId, tx.operatorId),
+		eq(slot.siteId, siteId),
+		gt(slot.startsAt, now),
+		// A slot that was merely taken back, with nobody in it, is not told of.
+		sql`(${slot.status} <> 'called_off' or exists (select 1 from weather_call_slot called
+			where called.operator_id = ${slot.operatorId} and called.slot_id = ${slot.id}))`
+	];
+}
+
 /**
- * Slots of a site that visitors can see, in order of time: open ones that have not begun, and called
- * off ones too, so that nobody looks for them in vain.
+ * Local dates on which a site has slots that visitors can see, in order.
+ * @param from the first date to look at
+ */
+export async function listSaleDates(
+	tx: TenantTx,
+	{ siteId, now, from, most }: { siteId: string; now: Date; from: string; most: number }
+): Promise<string[]> {
+	const rows = await tx.sql
+		.selectDistinct({ date: slot.localDate })
+		.from(slot)
+		.where(and(...visible(tx, siteId, now), gte(slot.localDate, from)))
+		.orderBy(asc(slot.localDate))
+		.limit(most);
+	return rows.map(({ date }) => date);
+}
+
+/**
+ * Slots of a site that visitors can see, in order of time.
  * @param until local date, counted
  */
 export function listSlotsForSale(
@@ -61,9 +89,7 @@ export function listSlotsForSale(
 	return query(tx)
 		.where(
 			and(
-				eq(slot.operatorId, tx.operatorId),
-				eq(slot.siteId, siteId),
-				gt(slot.startsAt, now),
+				...visible(tx, siteId, now),
 				...(from ? [gte(slot.localDate, from)] : []),
 				lte(slot.localDate, until)
 			)

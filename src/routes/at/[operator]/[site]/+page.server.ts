@@ -4,6 +4,7 @@ import { addDays, isLocalDate, localClock } from '$lib/schedule';
 import {
 	findOpenSite,
 	listPrices,
+	listSaleDates,
 	listSlotsForSale,
 	placesLeft
 } from '$lib/server/booking/slots-for-sale';
@@ -23,15 +24,18 @@ export const load: PageServerLoad = async (event) =>
 		const asked = event.url.searchParams.get('from') ?? '';
 		const from =
 			isLocalDate(asked) && asked > today && asked < addDays(today, 1000) ? asked : today;
-		const slots = await listSlotsForSale(tx, {
-			siteId: site.id,
-			now,
-			from,
-			until: addDays(from, 400)
-		});
 		// The next days that have anything, so that nobody pages through a closed month.
-		const dates = [...new Set(slots.map(({ localDate }) => localDate))];
+		const dates = await listSaleDates(tx, { siteId: site.id, now, from, most: pageDays + 1 });
 		const shown = dates.slice(0, pageDays);
+		const slots =
+			shown.length > 0
+				? await listSlotsForSale(tx, {
+						siteId: site.id,
+						now,
+						from: shown[0]!,
+						until: shown.at(-1)!
+					})
+				: [];
 		const windows =
 			shown.length > 0
 				? await windowsOfSite(tx, site.id, { from: shown[0]!, to: shown.at(-1)! })
