@@ -1,4 +1,4 @@
-import { describe, expect, it } from 'vitest';
+import { describe, expect, it, vi } from 'vitest';
 import { createSite, seenArcs, stateUnderSun } from '../../../src/lib/optics';
 import { ringDirection, ringFrame } from '../../../src/lib/optics/ring';
 import { AT_LEAST, AT_MOST, Sight } from '../../../src/lib/optics/sight';
@@ -6,6 +6,9 @@ import { positionOfVector, sunVector } from '../../../src/lib/optics/sun';
 import type { Plan } from '../../../src/lib/schemas/plan';
 import { casesFor, createRandom, randomPlan, seedFor } from '../../support/random';
 import { cross, plainEyes, steppedArc, sunVec, type Vec } from '../../support/ray-casting';
+
+// A machine that is busy with other things is slow, not wrong.
+vi.setConfig({ testTimeout: 120_000 });
 
 const CASES = casesFor(1500);
 

@@ -3,9 +3,12 @@ import { mkdtempSync, rmSync, writeFileSync } from 'node:fs';
 import { tmpdir } from 'node:os';
 import { join } from 'node:path';
 import { fileURLToPath } from 'node:url';
-import { afterAll, beforeAll, describe, expect, it } from 'vitest';
+import { afterAll, beforeAll, describe, expect, it, vi } from 'vitest';
 import { createSite, findWindows, stateAt } from '../../../src/lib/optics';
 import { quarryTerrace } from '../../support/plans';
+
+// A machine that is busy with other things is slow, not wrong.
+vi.setConfig({ testTimeout: 120_000 });
 
 const root = fileURLToPath(new URL('../../..', import.meta.url));
 let folder = '';

@@ -1,4 +1,4 @@
-import { describe, expect, it } from 'vitest';
+import { describe, expect, it, vi } from 'vitest';
 import {
 	createSite,
 	findWindows,
@@ -16,6 +16,9 @@ import type { Plan } from '../../../src/lib/schemas/plan';
 import { barePlan, curtain, fourByFour, pointZone, quarryTerrace, wall } from '../../support/plans';
 import { casesFor, createRandom, randomPlan, seedFor } from '../../support/random';
 import { narrowedArc, plainEyes, plainOpen, plainSkyline } from '../../support/ray-casting';
+
+// A machine that is busy with other things is slow, not wrong.
+vi.setConfig({ testTimeout: 120_000 });
 
 const seconds = (site: Site, from: string, to = from) =>
 	findWindows({ site, from, to }).map(({ windows }) =>
