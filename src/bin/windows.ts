@@ -43,7 +43,8 @@ function readSite(file: string, faults: string[]): Site | null {
 	}
 	let input: unknown;
 	try {
-		input = JSON.parse(text);
+		// Some editors begin a file with a byte order mark, which is no part of the JSON (RFC 8259, 8.1).
+		input = JSON.parse(text.replace(/^\uFEFF/, ''));
 	} catch (error) {
 		const reason = error instanceof Error ? error.message.replace(/\s+/g, ' ') : 'unknown';
 		faults.push(`plan: is not JSON (${reason})`);

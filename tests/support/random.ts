@@ -67,3 +67,18 @@ export function randomPlan(random: () => number): Plan {
 		}
 	};
 }
+
+/**
+ * The seed of a test: its own, or the environment's RANDOM_SEED to look at other cases. It is printed, so
+ * that a failure can be run again.
+ */
+export function seedFor(test: string, seed: number): number {
+	const chosen = Number(process.env.RANDOM_SEED ?? seed);
+	console.log(`${test}: seed ${chosen}`);
+	return chosen;
+}
+
+/** How many cases a test tries: its own number, times the environment's RANDOM_TIMES. */
+export function casesFor(count: number): number {
+	return Math.round(count * Number(process.env.RANDOM_TIMES ?? 1));
+}

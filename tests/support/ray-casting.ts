@@ -92,8 +92,8 @@ export function raySees({
 	return true;
 }
 
-/** Arc of an eye in degrees by steps along the ring, any enabled curtain, midpoints of the steps. */
-export function steppedArc(plan: Plan, sun: Vec, eye: Vec, stepDeg: number): number {
+/** Whether an eye sees the bow at a phi, in degrees, in any enabled curtain. */
+function seesAt(plan: Plan, sun: Vec, eye: Vec): (phiDeg: number) => boolean {
 	const rings = plan.curtains
 		.filter((curtain) => curtain.enabled ?? true)
 		.map((curtain) => ({
@@ -103,13 +103,42 @@ export function steppedArc(plan: Plan, sun: Vec, eye: Vec, stepDeg: number): num
 				waterTemperatureC: curtain.waterTemperature
 			})
 		}));
+	return (phiDeg) => rings.some((ring) => raySees({ plan, ...ring, sun, eye, phiDeg }));
+}
+
+/** Arc of an eye in degrees by steps along the ring, any enabled curtain, midpoints of the steps. */
+export function steppedArc(plan: Plan, sun: Vec, eye: Vec, stepDeg: number): number {
+	const sees = seesAt(plan, sun, eye);
 	const steps = Math.round(360 / stepDeg);
 	let seen = 0;
-	for (let i = 0; i < steps; i++) {
-		const phiDeg = (i + 0.5) * stepDeg;
-		if (rings.some((ring) => raySees({ plan, ...ring, sun, eye, phiDeg }))) seen++;
-	}
+	for (let i = 0; i < steps; i++) if (sees((i + 0.5) * stepDeg)) seen++;
 	return (seen * 360) / steps;
+}
+
+/** As steppedArc, with every change between two steps narrowed down by halving: exact but for slivers. */
+export function narrowedArc(plan: Plan, sun: Vec, eye: Vec, stepDeg: number): number {
+	const sees = seesAt(plan, sun, eye);
+	const steps = Math.round(360 / stepDeg);
+	let arc = 0;
+	let before = sees(0);
+	for (let i = 1; i <= steps; i++) {
+		const after = sees((i * 360) / steps);
+		let low = ((i - 1) * 360) / steps;
+		let high = (i * 360) / steps;
+		if (before === after) {
+			if (after) arc += high - low;
+		} else {
+			const [start, end] = [low, high];
+			for (let k = 0; k < 40; k++) {
+				const middle = (low + high) / 2;
+				if (sees(middle) === before) low = middle;
+				else high = middle;
+			}
+			arc += before ? low - start : end - high;
+		}
+		before = after;
+	}
+	return arc;
 }
 
 /** Lattice of a zone, every point of the bounding box tried. */
@@ -183,13 +212,14 @@ export function plainOpen(
 	plan: Plan,
 	eyes: readonly Vec[],
 	instantMs: number,
-	stepDeg: number
+	stepDeg: number,
+	arcOf = steppedArc
 ): boolean {
 	const { azimuth, altitude } = getPosition(new Date(instantMs), plan.latitude, plan.longitude);
 	if (altitude < plan.rule.minimumSunAltitude) return false;
 	if (!(altitude > plainSkyline(plan.skyline, azimuth))) return false;
 	const sun = sunVec(azimuth, altitude);
-	const have = eyes.filter((eye) => steppedArc(plan, sun, eye, stepDeg) >= plan.rule.minimumArc);
+	const have = eyes.filter((eye) => arcOf(plan, sun, eye, stepDeg) >= plan.rule.minimumArc);
 	return have.length / eyes.length >= plan.rule.minimumShare;
 }
 

@@ -8,6 +8,11 @@ import { sunTracker, type SunPosition } from './sun';
 /** Peaks are looked for at whole multiples of this many seconds UTC. */
 export const PEAK_STEP_S = 300;
 
+const DAY_S = 86_400;
+
+/** Peaks that are remembered: a day may have several windows. */
+const PEAKS_KEPT = 4;
+
 /** Times that a cell of the sky may be quartered before an instant in it is looked at itself. */
 const DEEPEST = 2;
 
@@ -20,6 +25,8 @@ export function medianOf(values: Float64Array, count: number): number {
 
 /** An instant of a window with what is known of it. */
 interface Candidate {
+	/** Whole seconds since 1970. */
+	readonly second: number;
 	readonly sun: SunPosition;
 	cell: SkyCell<PeakBound>;
 	looked: boolean;
@@ -41,6 +48,8 @@ export class PeakFinder {
 	private readonly sunAt: (instantMs: number) => SunPosition;
 	private readonly sky: SkyPeaks;
 	private readonly arcs: Float64Array;
+	/** When the last windows had their greatest medians, seconds since 1970. */
+	private readonly lastPeaksS: number[] = [];
 	private mostEyes = 0;
 	private medianDeg = 0;
 
@@ -58,48 +67,96 @@ export class PeakFinder {
 		const candidates = this.candidatesOf(startS, endS);
 		this.mostEyes = 0;
 		this.medianDeg = 0;
-		// The most promising first: it settles most of the others.
+		this.climb(candidates);
+		// The most promising first: it may settle others.
 		candidates.sort((a, b) => b.cell.known.medianAtMostDeg - a.cell.known.medianAtMostDeg);
 		for (const candidate of candidates) {
-			this.settle(candidate, ({ medianAtMostDeg }) => medianAtMostDeg > this.medianDeg);
+			const mayPeak = ({ medianAtMostDeg }: PeakBound) => medianAtMostDeg > this.medianDeg;
+			if (this.narrow(candidate, mayPeak) && this.mayBeatMedian(candidate)) this.look(candidate);
 		}
 		for (const candidate of candidates) {
 			if (this.mostEyes === this.zone.eyes.length) break;
-			this.settle(candidate, ({ mostEyes }) => mostEyes > this.mostEyes);
+			if (this.narrow(candidate, ({ mostEyes }) => mostEyes > this.mostEyes)) this.look(candidate);
 		}
 		return { peakShare: this.mostEyes / this.zone.eyes.length, peakArcDeg: this.medianDeg };
+	}
+
+	/**
+	 * Looks where one of the last windows had its peak, by the time of day, and on from there as long as the median
+	 * grows: what is seen first settles most of the other instants.
+	 * @param candidates in order of time
+	 */
+	private climb(candidates: readonly Candidate[]): void {
+		const apart = ({ second }: Candidate) =>
+			this.lastPeaksS.reduce((least, peakS) => {
+				const turned = Math.abs(second - peakS) % DAY_S;
+				return Math.min(least, turned, DAY_S - turned);
+			}, DAY_S);
+		let at = candidates.reduce((best, c, i) => (apart(c) < apart(candidates[best]!) ? i : best), 0);
+		this.look(candidates[at]!);
+		for (const step of [1, -1]) {
+			let next = candidates[at + step];
+			for (; next && !next.looked; next = candidates[at + step]) {
+				const before = this.medianDeg;
+				this.look(next);
+				if (this.medianDeg <= before) break;
+				at += step;
+			}
+		}
+		this.lastPeaksS.unshift(candidates[at]!.second);
+		this.lastPeaksS.splice(PEAKS_KEPT);
 	}
 
 	private candidatesOf(startS: number, endS: number): Candidate[] {
 		const candidates: Candidate[] = [];
 		const add = (second: number) => {
 			const sun = this.sunAt(second * 1000);
-			candidates.push({ sun, cell: this.sky.map.cellOf(sun), looked: false });
+			candidates.push({ second, sun, cell: this.sky.map.cellOf(sun), looked: false });
 		};
 		add(startS);
-		add(endS);
 		for (let s = (Math.floor(startS / PEAK_STEP_S) + 1) * PEAK_STEP_S; s < endS; s += PEAK_STEP_S) {
 			add(s);
 		}
+		add(endS);
 		return candidates;
 	}
 
-	/** Looks at an instant, unless a cell about it shows that it holds no peak. */
-	private settle(candidate: Candidate, mayPeak: (bound: PeakBound) => boolean): void {
-		if (candidate.looked) return;
+	/** Quarters the cell about an instant as long as it may hold a peak; whether the last one still may. */
+	private narrow(candidate: Candidate, mayPeak: (bound: PeakBound) => boolean): boolean {
+		if (candidate.looked) return false;
 		while (mayPeak(candidate.cell.known)) {
-			if (candidate.cell.disc.depth === DEEPEST) {
-				this.look(candidate.sun);
-				candidate.looked = true;
-				return;
-			}
+			if (candidate.cell.disc.depth === DEEPEST) return true;
 			candidate.cell = this.sky.map.quarterOf(candidate.cell, candidate.sun);
 		}
+		return false;
 	}
 
-	private look(sun: SunPosition): void {
-		const { arcs, sight } = this;
+	/**
+	 * Whether an instant may have a greater median than was seen so far: not when of the eyes that may have
+	 * the bow more have at most that arc than do not. What the cell says of its eyes counts without a look;
+	 * the others are looked at, those that are likely to settle it first.
+	 */
+	private mayBeatMedian({ sun, cell }: Candidate): boolean {
+		const { sight, medianDeg } = this;
+		const { certain, certainAtMostDeg, unsure, mostEyes } = cell.known;
+		let possible = mostEyes;
+		let notAbove = 0;
+		while (notAbove < certain.length && certainAtMostDeg[notAbove]! <= medianDeg) notAbove++;
+		const settled = notAbove;
 		sight.setSun(ringFrame(sun));
+		for (let i = settled; i < mostEyes && 2 * notAbove <= possible; i++) {
+			const e = i < certain.length ? certain[i]! : unsure[i - certain.length]!;
+			const arc = sight.arcDeg(e);
+			if (arc < this.site.minimumArcDeg) possible--;
+			else if (arc <= medianDeg) notAbove++;
+		}
+		return 2 * notAbove <= possible;
+	}
+
+	/** Looks at every eye at an instant. */
+	private look(candidate: Candidate): void {
+		const { arcs, sight } = this;
+		sight.setSun(ringFrame(candidate.sun));
 		let have = 0;
 		for (let e = 0; e < this.zone.eyes.length; e++) {
 			const arc = sight.arcDeg(e);
@@ -107,5 +164,6 @@ export class PeakFinder {
 		}
 		this.mostEyes = Math.max(this.mostEyes, have);
 		if (have > 0) this.medianDeg = Math.max(this.medianDeg, medianOf(arcs, have));
+		candidate.looked = true;
 	}
 }

@@ -6,8 +6,11 @@ import { ROUNDING_DEG } from './verdict';
 
 /** What the peaks can be, at most, for all suns of a disc. */
 export interface PeakBound {
-	/** Eyes certain to have the bow, and eyes that may have it or not. */
+	/** Eyes certain to have the bow, by what their arcs are at most, ascending. */
 	readonly certain: Int32Array;
+	/** What the arc of each of them is at most, degrees. */
+	readonly certainAtMostDeg: Float64Array;
+	/** Eyes that may have the bow or not; all others have it not. */
 	readonly unsure: Int32Array;
 	/** No sun of the disc shows the bow to more eyes. */
 	readonly mostEyes: number;
@@ -46,11 +49,9 @@ export class SkyPeaks {
 	readonly map: SkyMap<PeakBound>;
 	private readonly sight: Sight;
 	private readonly minimumArcDeg: number;
-	private readonly everyEye: { certain: Int32Array; unsure: Int32Array };
-	private readonly certain: Int32Array;
-	private readonly unsure: Int32Array;
-	private readonly certainArcs: Float64Array;
-	private readonly unsureArcs: Float64Array;
+	private readonly everyEye: Pick<PeakBound, 'certain' | 'unsure'>;
+	/** What each eye's arc is at most in the disc that is being looked at. */
+	private readonly atMostDeg: Float64Array;
 
 	constructor(site: Site, zone: Zone, sight: Sight) {
 		const count = zone.eyes.length;
@@ -60,10 +61,7 @@ export class SkyPeaks {
 			certain: new Int32Array(0),
 			unsure: Int32Array.from(zone.eyes, (_, e) => e)
 		};
-		this.certain = new Int32Array(count);
-		this.unsure = new Int32Array(count);
-		this.certainArcs = new Float64Array(count);
-		this.unsureArcs = new Float64Array(count);
+		this.atMostDeg = new Float64Array(count);
 		this.map = new SkyMap((disc, parent) => this.bound(disc, parent));
 	}
 
@@ -71,32 +69,31 @@ export class SkyPeaks {
 		const { sight, minimumArcDeg } = this;
 		const before = parent && discHolds(parent.disc, disc) ? parent.known : this.everyEye;
 		sight.setSun(ringFrame(disc.sun), disc.reachRad);
-		let c = 0;
-		let u = 0;
+		const { atMostDeg } = this;
+		const certain: number[] = [];
+		const unsure: number[] = [];
 		for (const e of before.certain) {
-			this.certain[c] = e;
-			this.certainArcs[c++] = sight.arcDeg(e, AT_MOST);
+			atMostDeg[e] = sight.arcDeg(e, AT_MOST) + ROUNDING_DEG;
+			certain.push(e);
 		}
 		for (const e of before.unsure) {
-			const most = sight.arcDeg(e, AT_MOST);
-			if (most < minimumArcDeg - ROUNDING_DEG) continue;
-			if (sight.arcDeg(e, AT_LEAST) >= minimumArcDeg + ROUNDING_DEG) {
-				this.certain[c] = e;
-				this.certainArcs[c++] = most;
-			} else {
-				this.unsure[u] = e;
-				this.unsureArcs[u++] = most;
-			}
+			const most = sight.arcDeg(e, AT_MOST) + ROUNDING_DEG;
+			if (most < minimumArcDeg) continue;
+			atMostDeg[e] = most;
+			const has = sight.arcDeg(e, AT_LEAST) >= minimumArcDeg + ROUNDING_DEG;
+			(has ? certain : unsure).push(e);
 		}
-		const medianDeg = medianBound(
-			this.certainArcs.subarray(0, c).sort(),
-			this.unsureArcs.subarray(0, u).sort()
-		);
+		certain.sort((a, b) => atMostDeg[a]! - atMostDeg[b]!);
+		const certainAtMostDeg = Float64Array.from(certain, (e) => atMostDeg[e]!);
 		return {
-			certain: this.certain.slice(0, c),
-			unsure: this.unsure.slice(0, u),
-			mostEyes: c + u,
-			medianAtMostDeg: medianDeg + ROUNDING_DEG
+			certain: Int32Array.from(certain),
+			certainAtMostDeg,
+			unsure: Int32Array.from(unsure),
+			mostEyes: certain.length + unsure.length,
+			medianAtMostDeg: medianBound(
+				certainAtMostDeg,
+				Float64Array.from(unsure, (e) => atMostDeg[e]!).sort()
+			)
 		};
 	}
 }

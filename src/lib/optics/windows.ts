@@ -36,14 +36,24 @@ interface Span {
 	readonly endS: number;
 }
 
-/** What has been found out of the sky over a zone serves every range of dates that is asked for. */
-const finders = new WeakMap<Zone, { search: OpenSearch; peaks: PeakFinder }>();
+interface Finder {
+	readonly search: OpenSearch;
+	readonly peaks: PeakFinder;
+}
 
-function finderOf(site: Site, zone: Zone): { search: OpenSearch; peaks: PeakFinder } {
-	let finder = finders.get(zone);
+/** What has been found out of the sky over a zone serves every range of dates that is asked for. */
+const finders = new WeakMap<Site, Map<Zone, Finder>>();
+
+function finderOf(site: Site, zone: Zone): Finder {
+	let ofSite = finders.get(site);
+	if (!ofSite) {
+		ofSite = new Map();
+		finders.set(site, ofSite);
+	}
+	let finder = ofSite.get(zone);
 	if (!finder) {
 		finder = { search: new OpenSearch(site, zone), peaks: new PeakFinder(site, zone) };
-		finders.set(zone, finder);
+		ofSite.set(zone, finder);
 	}
 	return finder;
 }

@@ -3,7 +3,7 @@
  * wall-clock times are read through a zone's clock, and now is never asked for.
  */
 export { isTimeZone, localClock, type LocalClock, type LocalDate } from './local-clock';
-export { addDays, localDayRange, MOST_DAYS, parseLocalDate } from './local-days';
+export { addDays, isLocalDate, localDayRange, MOST_DAYS, parseLocalDate } from './local-days';
 export { parseInstant } from './instants';
 export {
 	openIntervals,

@@ -25,6 +25,16 @@ export function parseLocalDate(text: string): Temporal.PlainDate {
 	return date;
 }
 
+/** Whether a text is a date that `parseLocalDate` reads. */
+export function isLocalDate(text: string): boolean {
+	try {
+		parseLocalDate(text);
+		return true;
+	} catch {
+		return false;
+	}
+}
+
 /**
  * A range of local days as instants.
  *

@@ -160,8 +160,8 @@ export const planSchema = fields({
 		.string({ error: (issue) => (issue.input === undefined ? 'is missing' : 'must be text') })
 		.refine(isTimeZone, { error: 'must be an IANA time zone such as Europe/Paris' }),
 	skyline: skylineSchema,
-	curtains: list(curtainSchema, { least: 0, most: 100 }),
-	walls: list(wallSchema, { least: 0, most: 200 }).optional(),
+	curtains: list(curtainSchema, { least: 0, most: 500 }),
+	walls: list(wallSchema, { least: 0, most: 500 }).optional(),
 	zones: list(zoneSchema, { least: 0, most: 100 }),
 	rule: ruleSchema
 });

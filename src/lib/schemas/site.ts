@@ -1,6 +1,6 @@
 import { z } from 'zod';
 import { isCurrency, parseAmount, rateBasisPoints } from '../money';
-import { isTimeZone, parseLocalDate, parseTimeOfDay } from '../schedule';
+import { isLocalDate, isTimeZone, parseTimeOfDay } from '../schedule';
 import { emailField } from './people';
 
 /** A decimal number as people type it, comma or point. */
@@ -68,17 +68,7 @@ export const siteSchema = z.object({
 	open: z.boolean().default(false)
 });
 
-const localDate = z
-	.string()
-	.trim()
-	.refine((value) => {
-		try {
-			parseLocalDate(value);
-			return true;
-		} catch {
-			return false;
-		}
-	}, 'Give a date such as 2027-03-28.');
+const localDate = z.string().trim().refine(isLocalDate, 'Give a date such as 2027-03-28.');
 
 export const windowsRangeSchema = z
 	.object({ from: localDate, to: localDate })

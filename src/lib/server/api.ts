@@ -1,5 +1,6 @@
 import { isHttpError, type RequestEvent } from '@sveltejs/kit';
 import { createHash } from 'node:crypto';
+import { addDays, isLocalDate } from '../schedule';
 import { Refusal } from './failures';
 import { log } from './log';
 
@@ -58,15 +59,21 @@ export async function answerJson(
 	}
 }
 
-/** Reads one or two local dates from the query. @throws Refusal */
+/** Most days that one request may ask for. */
+const mostDays = 92;
+
+/** Reads one or two local dates from the query; both are counted. @throws Refusal */
 export function rangeOf(url: URL, fallback: { from: string; to: string }) {
 	const from = url.searchParams.get('from') ?? fallback.from;
 	const to = url.searchParams.get('to') ?? (url.searchParams.has('from') ? from : fallback.to);
 	for (const [name, value] of Object.entries({ from, to })) {
-		if (!/^\d{4}-\d{2}-\d{2}$/.test(value)) {
+		if (!isLocalDate(value)) {
 			throw new Refusal('invalid', `${name} must be a date such as 2027-03-28.`);
 		}
 	}
 	if (from > to) throw new Refusal('invalid', 'to is before from.');
+	if (to > addDays(from, mostDays - 1)) {
+		throw new Refusal('invalid', `At most ${mostDays} days can be asked for at once.`);
+	}
 	return { from, to };
 }

@@ -108,6 +108,12 @@ describe('windows on the command line', () => {
 		expect(lines.map((line) => line.split(':')[0])).toEqual(paths);
 	});
 
+	it('reads a file that begins with a byte order mark', () => {
+		const file = join(folder, 'marked.json');
+		writeFileSync(file, `\uFEFF${JSON.stringify(quarryTerrace())}`);
+		expect(run(file, '--at', '2027-03-01T08:30:00Z').status).toBe(0);
+	});
+
 	it('exits 2 for a file that is missing or not JSON, and for none', () => {
 		const dates = ['--from', '2027-03-01', '--to', '2027-03-01'];
 		const broken = join(folder, 'broken.json');

@@ -49,7 +49,7 @@ const overlaps = (a: Interval, b: Interval) => a.startMs < b.endMs && b.startMs 
 
 /**
  * Compares what a programme would lay out in its windows with the slots that there are.
- * @param slots coming slots of the zone that are not called off, of any programme
+ * @param slots coming slots of the zone, of any programme; those called off block their time and no more
  */
 export function findDifference({
 	programme,
@@ -86,7 +86,9 @@ export function findDifference({
 	const windowOf = (at: Interval) =>
 		windows.find((_, i) => intervals[i]!.startMs <= at.startMs && at.endMs <= intervals[i]!.endMs);
 
-	const own = slots.filter(({ programmeId }) => programmeId === programme.id);
+	const standingOff = slots.filter(({ status }) => status === 'called_off');
+	const present = slots.filter(({ status }) => status !== 'called_off');
+	const own = present.filter(({ programmeId }) => programmeId === programme.id);
 	const wanted = new Map(laid.map((one) => [`${one.startMs} ${one.endMs}`, one]));
 	const kept: Difference['kept'] = [];
 	const removed: Slot[] = [];
@@ -104,8 +106,9 @@ export function findDifference({
 	}
 	const standing = [
 		...staying.map(({ slot }) => ms(slot)),
-		...slots.filter(({ programmeId }) => programmeId !== programme.id).map(ms)
+		...present.filter(({ programmeId }) => programmeId !== programme.id).map(ms)
 	];
+	const barred = [...standing, ...standingOff.map(ms)];
 	const added: NewSlot[] = [];
 	const blocked: NewSlot[] = [];
 	for (const one of wanted.values()) {
@@ -117,7 +120,7 @@ export function findDifference({
 			startsAt: new Date(one.startMs),
 			endsAt: new Date(one.endMs)
 		};
-		(standing.some((other) => overlaps(other, one)) ? blocked : added).push(fresh);
+		(barred.some((other) => overlaps(other, one)) ? blocked : added).push(fresh);
 	}
 	const coming = intervals.flatMap(({ startMs, endMs }) =>
 		endMs > now.getTime() ? [{ startMs: Math.max(startMs, now.getTime()), endMs }] : []

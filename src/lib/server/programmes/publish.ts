@@ -1,9 +1,9 @@
-import { and, eq, gt, inArray, ne } from 'drizzle-orm';
+import { and, eq, gt, inArray, ne, or } from 'drizzle-orm';
 import { createHash } from 'node:crypto';
 import { addToTrail } from '../audit/trail';
 import { demand } from '../auth/rights';
 import { violates } from '../db/errors';
-import { order, programme, slot, slotForecast, zone } from '../db/schema';
+import { order, programme, slot, slotForecast, weatherCallSlot, zone } from '../db/schema';
 import type { TenantTx } from '../db/transaction';
 import { Refusal } from '../failures';
 import { sellingObstacles } from '../payments/accounts';
@@ -41,8 +41,9 @@ export async function previewProgramme(
 		where: and(
 			eq(slot.operatorId, tx.operatorId),
 			eq(slot.zoneId, found.zoneId),
-			ne(slot.status, 'called_off'),
-			gt(slot.startsAt, now)
+			gt(slot.startsAt, now),
+			// What the weather called off is not offered anew; what was merely taken back leaves no mark.
+			or(ne(slot.status, 'called_off'), inArray(slot.id, calledOffByWeather(tx)))
 		),
 		orderBy: slot.startsAt
 	});
@@ -54,6 +55,13 @@ export async function previewProgramme(
 		now
 	});
 	return { difference, digest: digestOf(difference), obstacles };
+}
+
+function calledOffByWeather(tx: TenantTx) {
+	return tx.sql
+		.select({ id: weatherCallSlot.slotId })
+		.from(weatherCallSlot)
+		.where(eq(weatherCallSlot.operatorId, tx.operatorId));
 }
 
 function digestOf({ added, kept, removed, staying }: Difference): string {

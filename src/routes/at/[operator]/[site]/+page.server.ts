@@ -1,6 +1,6 @@
 import { error } from '@sveltejs/kit';
 import { dayBand } from '$lib/day-band';
-import { addDays, localClock } from '$lib/schedule';
+import { addDays, isLocalDate, localClock } from '$lib/schedule';
 import {
 	findOpenSite,
 	listPrices,
@@ -21,7 +21,8 @@ export const load: PageServerLoad = async (event) =>
 		const now = new Date();
 		const today = localClock(site.timeZone).dateAt(now.getTime());
 		const asked = event.url.searchParams.get('from') ?? '';
-		const from = /^\d{4}-\d{2}-\d{2}$/.test(asked) && asked > today ? asked : today;
+		const from =
+			isLocalDate(asked) && asked > today && asked < addDays(today, 1000) ? asked : today;
 		const slots = await listSlotsForSale(tx, {
 			siteId: site.id,
 			now,

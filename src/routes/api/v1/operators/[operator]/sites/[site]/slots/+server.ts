@@ -6,7 +6,7 @@ import { Refusal } from '$lib/server/failures';
 import { asVisitor } from '$lib/server/visitor';
 import type { RequestHandler } from './$types';
 
-/** Coming slots of a site with the places left: `?from=2027-03-28&to=2027-04-03`, a month at most. */
+/** Coming slots of a site with the places left: `?from=2027-03-28&to=2027-04-03` (92 days at most). */
 export const GET: RequestHandler = (event) =>
 	answerJson(event, () =>
 		asVisitor(event, async (tx) => {

@@ -1,0 +1,82 @@
+import { readFileSync } from 'node:fs';
+import { describe, expect, test } from 'vitest';
+import { readPlan, type Plan } from '$lib/schemas/plan';
+import { fieldsFromPlan, planFromFields, typedNumber, typedRows } from '$lib/schemas/plan-form';
+
+const plan = JSON.parse(readFileSync('tests/fixtures/four-by-four.json', 'utf8')) as Plan;
+const { name, latitude, longitude, elevation, timeZone } = plan;
+const site = { name, latitude, longitude, elevation, timeZone };
+
+describe('a plan as tables', () => {
+	test('comes back as it was', () => {
+		const read = readPlan(plan);
+		expect(read.ok && planFromFields(fieldsFromPlan(plan), site)).toEqual({
+			plan: read.ok && read.plan
+		});
+	});
+
+	test('rows left empty are none, and a fault names the field where it was typed', () => {
+		const fields = fieldsFromPlan(plan);
+		const moved: Record<string, string> = {};
+		for (const [field, value] of Object.entries(fields)) {
+			moved[field.replace(/^curtains\[(\d)\]/, (_, i) => `curtains[${Number(i) + 3}]`)] = value;
+		}
+		moved['curtains[4].top'] = 'high';
+		moved['curtains[5].dropDiameter'] = '4';
+		const answer = planFromFields(moved, site);
+		expect('faults' in answer && answer.faults).toEqual([
+			{ path: 'curtains[4].top', message: 'must be a finite number' },
+			{ path: 'curtains[5].dropDiameter', message: 'must be from 5 to 3000' }
+		]);
+	});
+
+	test('faults in lists of numbers name the one field that they were typed in', () => {
+		const fields = {
+			...fieldsFromPlan(plan),
+			skyline: '0; 6\n60; high\n50; 3',
+			'zones[0].outline': '0; 0\n5; 5\n5; 0\n0; 5',
+			'zones[0].eyeHeights': '1,2; tall'
+		};
+		const answer = planFromFields(fields, site);
+		const paths = 'faults' in answer ? answer.faults.map(({ path }) => path) : [];
+		expect(new Set(paths)).toEqual(new Set(['skyline', 'zones[0].outline', 'zones[0].eyeHeights']));
+	});
+});
+
+describe('numbers as people type them', () => {
+	test.each([
+		['1,5', 1.5],
+		[' 2.25 ', 2.25],
+		['−3', -3],
+		['+4', 4],
+		['.5', 0.5]
+	])('%s', (text, value) => expect(typedNumber(text)).toBe(value));
+	test.each(['', 'abc', '1.2.3', '1,2,3', '1e3', 'Infinity', 'NaN', '0x10', '١'])(
+		'%s is none',
+		(text) => expect(typedNumber(text)).toBeNaN()
+	);
+});
+
+describe('lines of numbers', () => {
+	const rows = [
+		[0, 6],
+		[60, 9.5]
+	];
+	test.each([
+		['semicolons and points', '0; 6\n60; 9.5'],
+		['semicolons and decimal commas', '0;6\r\n60;9,5\r\n'],
+		['commas', '0,6\n60,9.5'],
+		['tabs', '0\t6\n60\t9.5'],
+		['spaces and decimal commas', '0 6\n60 9,5'],
+		['a byte-order mark and a heading', '\uFEFFazimuth;altitude\n0;6\n60;9,5'],
+		['empty lines and old line ends', '0, 6\r\r60, 9.5']
+	])('with %s', (_, text) => expect(typedRows(text)).toEqual(rows));
+
+	test('a hundred thousand of them are read, and refused by the plan in one message', () => {
+		const text = Array.from({ length: 100_000 }, (_, i) => `${i};1`).join('\n');
+		const answer = planFromFields({ ...fieldsFromPlan(plan), skyline: text }, site);
+		expect(
+			'faults' in answer && answer.faults.filter(({ path }) => path === 'skyline').length
+		).toBeGreaterThan(0);
+	});
+});
