@@ -11,6 +11,7 @@ import {
 	removeMember,
 	withdrawInvitation
 } from '../../../src/lib/server/operators/members.ts';
+import type { TenantTx } from '../../../src/lib/server/db/transaction.ts';
 import { adminQuery } from '../../support/database.ts';
 import { lettersTo } from '../../support/letters.ts';
 import {
@@ -49,11 +50,11 @@ describe('the last owner', () => {
 		const operator = await makeOperator();
 		const memberId = await memberIdOf(operator, operator.owner);
 		for (const attempt of [
-			asOwner(operator, leaveOperator),
-			asOwner(operator, (tx) => removeMember(tx, memberId)),
-			asOwner(operator, (tx) => changeRole(tx, { memberId, role: 'planner' }))
+			leaveOperator,
+			(tx: TenantTx) => removeMember(tx, memberId),
+			(tx: TenantTx) => changeRole(tx, { memberId, role: 'planner' })
 		]) {
-			const refusal = await refusalOf(attempt);
+			const refusal = await refusalOf(asOwner(operator, attempt));
 			expect([refusal.kind, refusal.message]).toEqual([
 				'conflict',
 				expect.stringContaining('at least one owner')
@@ -216,10 +217,10 @@ test('the roles of one operator are no matter of another’s owner', async () =>
 	const planner = await makeMember(other, 'planner');
 	const memberId = await memberIdOf(other, planner);
 	for (const attempt of [
-		asOwner(operator, (tx) => removeMember(tx, memberId)),
-		asOwner(operator, (tx) => changeRole(tx, { memberId, role: 'owner' }))
+		(tx: TenantTx) => removeMember(tx, memberId),
+		(tx: TenantTx) => changeRole(tx, { memberId, role: 'owner' })
 	]) {
-		expect((await refusalOf(attempt)).kind).toBe('not_found');
+		expect((await refusalOf(asOwner(operator, attempt))).kind).toBe('not_found');
 	}
 	expect(await ownersOf(other)).toBe(1);
 });
