@@ -1,3 +1,5 @@
+import { vividWords } from './bow-strip';
+
 /** Compass words for a direction, degrees clockwise from north. */
 const winds = [
 	'north',
@@ -27,10 +29,12 @@ export function arcWords(arcDeg: number): string {
 /** What a visitor sees in a slot, and where to look. */
 export function viewWords({
 	arcDeg,
-	lookAzimuthDeg
+	lookAzimuthDeg,
+	vividness
 }: {
 	arcDeg: number;
 	lookAzimuthDeg: number;
+	vividness: number;
 }): string {
-	return `${arcWords(arcDeg)} of bow. Stand with the sun behind you and look ${compassWord(lookAzimuthDeg)}.`;
+	return `${arcWords(arcDeg)} of bow, ${vividWords(vividness)}. Stand with the sun behind you and look ${compassWord(lookAzimuthDeg)}.`;
 }

@@ -30,6 +30,7 @@ const headColumns = {
 	slotStatus: slot.status,
 	arcDeg: slot.arcDeg,
 	lookAzimuthDeg: slot.lookAzimuthDeg,
+	dropDiameterUm: slot.dropDiameterUm,
 	zone: zone.name,
 	site: site.name,
 	siteSlug: site.slug,

@@ -28,6 +28,7 @@ export function listSlots(
 			held: slot.held,
 			sold: slot.sold,
 			arcDeg: slot.arcDeg,
+			dropDiameterUm: slot.dropDiameterUm,
 			suggestion: slotForecast.suggestion,
 			because: slotForecast.because,
 			readAt: slotForecast.readAt

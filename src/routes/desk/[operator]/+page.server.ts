@@ -1,3 +1,4 @@
+import { bowStrip } from '$lib/bow-strip';
 import { dayBand } from '$lib/day-band';
 import { groupBy } from '$lib/group-by';
 import { localClock } from '$lib/schedule';
@@ -35,6 +36,7 @@ export const load: PageServerLoad = (event) =>
 					date,
 					isToday: date === today,
 					band: dayBand({ site, date, windows, slots: ofDate }),
+					strip: ofDate[0] ? bowStrip(ofDate[0].dropDiameterUm) : null,
 					slots: ofDate.filter(({ endsAt }) => endsAt > now)
 				};
 			})

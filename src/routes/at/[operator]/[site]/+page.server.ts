@@ -1,4 +1,5 @@
 import { error } from '@sveltejs/kit';
+import { bowStrip } from '$lib/bow-strip';
 import { dayBand } from '$lib/day-band';
 import { addDays, isLocalDate, localClock } from '$lib/schedule';
 import {
@@ -64,6 +65,7 @@ export const load: PageServerLoad = async (event) =>
 				return {
 					date,
 					band: dayBand({ site, date, windows, slots: own }),
+					strip: own[0] ? bowStrip(own[0].dropDiameterUm) : null,
 					slots: own.map((slot) => ({
 						id: slot.id,
 						zone: slot.zone,

@@ -1,5 +1,6 @@
 import { error, redirect } from '@sveltejs/kit';
 import { v7 as uuidv7 } from 'uuid';
+import { bowStrip } from '$lib/bow-strip';
 import { reserveSchema } from '$lib/schemas/order';
 import {
 	AlreadyReserved,
@@ -50,6 +51,7 @@ export const load: PageServerLoad = async (event) =>
 				forSale: slot.status === 'open' && slot.startsAt > new Date() && left > 0,
 				calledOff: slot.status === 'called_off'
 			},
+			strip: bowStrip(slot.dropDiameterUm),
 			prices,
 			policy: await readRefundPolicy(tx, slot.programmeId),
 			holdMinutes,

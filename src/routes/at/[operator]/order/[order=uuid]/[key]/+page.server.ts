@@ -1,4 +1,5 @@
 import { error } from '@sveltejs/kit';
+import { bowStrip } from '$lib/bow-strip';
 import { emptySchema } from '$lib/schemas/people';
 import { ticketQrAddress } from '$lib/server/booking/enclosures';
 import { groupedCode } from '$lib/server/booking/codes';
@@ -36,6 +37,7 @@ export const load: PageServerLoad = async (event) => {
 	return {
 		order: {
 			...found,
+			vividness: bowStrip(found.dropDiameterUm).vividness,
 			lapsed: found.status === 'pending' && found.holdUntil <= now,
 			tickets: await Promise.all(
 				found.tickets.map(async (ticket) => ({
