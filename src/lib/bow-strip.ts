@@ -1,16 +1,14 @@
 import { bowSpectrum } from './optics/colour';
 
-/** A colour across the bow, outer edge first, and how opaque to paint it. */
-export interface StripStop {
-	colour: string;
-	opacity: number;
-}
-
 /** A bow's colours for bands and strips, and how vivid they are (0 white, about 1 the best that drops do). */
 export interface BowStrip {
-	stops: StripStop[];
+	/** `#rrggbb`, outer edge first, evenly spaced. */
+	stops: string[];
 	vividness: number;
 }
+
+/** Fainter than this part of the brightest place is left out. */
+const LEAST_STRENGTH = 0.15;
 
 /**
  * The colours that a visitor sees in mist of a drop size. Airy's theory at every size: where it is off,
@@ -18,14 +16,14 @@ export interface BowStrip {
  * @param dropDiameterUm volume median, 5 to 3000
  */
 export function bowStrip(dropDiameterUm: number): BowStrip {
-	const { stops, vividness } = bowSpectrum({ dropDiameterUm, stopCount: 15, scattering: 'airy' });
+	const { stops, vividness } = bowSpectrum({ dropDiameterUm, stopCount: 65, scattering: 'airy' });
+	// The bright part of the ring: its faint edges have hues too, which nobody sees.
+	const bright = stops.filter(({ strength }) => strength >= LEAST_STRENGTH);
+	const step = Math.max(1, Math.floor(bright.length / 14));
 	return {
-		// The eye takes brightness by its root: so the faint edges are seen and still fade.
-		stops: stops
-			.map(({ colour, strength }) => ({
-				colour,
-				opacity: Math.round(Math.sqrt(strength) * 100) / 100
-			}))
+		stops: bright
+			.filter((_, i) => i % step === 0 || i === bright.length - 1)
+			.map(({ colour }) => colour)
 			.reverse(),
 		vividness
 	};
