@@ -31,7 +31,7 @@ function years(): Measure[] {
 			example: () => windowsOf(example),
 			busy: () => windowsOf(busy)
 		},
-		7
+		5
 	);
 	return [
 		{ name: 'sun at 525,600 minutes', value: times.sun, unit: 'ms' },
@@ -119,7 +119,7 @@ function instants(): Measure[] {
 				return share;
 			}
 		},
-		7
+		5
 	);
 	const stateMs = times.state / looks;
 	return [
