@@ -23,6 +23,8 @@ export async function startReceiver() {
 		const chunks: Buffer[] = [];
 		request.on('data', (chunk: Buffer) => chunks.push(chunk));
 		request.on('end', () => {
+			// A stray call to a port that was somebody else's before is not ours to judge.
+			if (request.url !== '/webhook') return response.writeHead(404).end();
 			const body = Buffer.concat(chunks).toString();
 			const signature = String(request.headers['stripe-signature']);
 			const event = Stripe.webhooks.constructEvent(body, signature, SECRET);

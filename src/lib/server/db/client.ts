@@ -55,13 +55,19 @@ export function getSidePool(): pg.Pool {
  * A connection on which `opening` (what begins a transaction) has run. While the database restarts
  * this waits up to eight seconds, so that a request in that moment is late and not lost. Nothing but
  * the opening was sent, so trying again is safe.
+ * @param onError hears of a connection that breaks, from its first moment on: unheard, that would end
+ *   the process
  * @throws the last connection error when the database stays away
  */
-export async function connect(opening: string): Promise<pg.PoolClient> {
+export async function connect(
+	opening: string,
+	onError: (error: Error) => void
+): Promise<pg.PoolClient> {
 	const until = Date.now() + patienceMs;
 	for (let delayMs = 50; ; delayMs = Math.min(delayMs * 2, 800)) {
 		try {
 			const client = await getPool().connect();
+			client.on('error', onError);
 			try {
 				await client.query(opening);
 				return client;

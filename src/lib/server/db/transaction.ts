@@ -58,13 +58,13 @@ function beginWith(settings: Settings): string {
  * written each time, local to the transaction, so that pooled connections carry nothing over.
  */
 async function open<T>(settings: Settings, run: (sql: Sql) => Promise<T>): Promise<T> {
-	const client = await connect(beginWith(settings));
 	let broken: Error | undefined;
+	// A connection that breaks in mid-transaction reports here as well as at the statement.
 	const onError = (error: Error) => {
 		broken = error;
 	};
-	// A connection that breaks in mid-transaction reports here as well as at the statement.
-	client.on('error', onError);
+	const client = await connect(beginWith(settings), onError);
+	broken = undefined;
 	try {
 		const result = await run(drizzle(client, { schema }));
 		await client.query('commit');
