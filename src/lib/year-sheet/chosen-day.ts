@@ -1,9 +1,9 @@
 import { bowStrip, type BowStrip } from '../bow-strip';
 import type { DayBandData } from '../day-band';
-import { createSite, seenArcs, stateAt, sunPosition, type BowWindow, type Site } from '../optics';
+import { seenArcs, stateAt, sunPosition, type BowWindow, type Site } from '../optics';
 import { localDayRange, type Interval, type LaidSlot, type LocalDate } from '../schedule';
 import type { Plan } from '../schemas/plan';
-import { planOfZone } from './year-pieces';
+import { siteOfZone } from './year-pieces';
 
 /** One day of a year sheet, large. */
 export interface ChosenDay {
@@ -77,7 +77,7 @@ function mainDropDiameter(plan: Plan, site: Site, instantMs: number): number | n
 
 /** Looks at a zone of a plan. @throws RangeError when the plan is wrong or has no such zone */
 export function zoneLook(plan: Plan, zoneIndex: number): ZoneLook {
-	const site = createSite(planOfZone(plan, zoneIndex));
+	const site = siteOfZone(plan, zoneIndex);
 	return {
 		stripOf({ startMs, endMs }) {
 			const drops = mainDropDiameter(plan, site, (startMs + endMs) / 2);

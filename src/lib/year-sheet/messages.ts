@@ -1,6 +1,7 @@
 import type { BowWindow } from '../optics';
 import type { Interval } from '../schedule';
 import type { Plan } from '../schemas/plan';
+import type { Shade } from './year-pieces';
 
 /** What a page asks the year's worker for. A new start ends the run before it. */
 export type YearRequest =
@@ -26,5 +27,11 @@ export type YearAnswer =
 			readonly daysInAll: number;
 			/** Milliseconds since the worker had the plan. */
 			readonly afterMs: number;
+	  }
+	| {
+			/** After the last piece: the shades of the next windows in their order. */
+			readonly kind: 'shades';
+			readonly run: number;
+			readonly shades: readonly (readonly Shade[])[];
 	  }
 	| { readonly kind: 'fault'; readonly run: number; readonly message: string };

@@ -15,6 +15,7 @@ import {
 	type OpeningHours,
 	type Season
 } from '../schedule';
+import type { Shade } from './year-pieces';
 
 /**
  * The drawing of a year sheet, without a way of drawing: dates go down, a row of height 1 each from 0;
@@ -177,14 +178,50 @@ export function intervalsPath(
 	return intervals.map((one) => rowsPath(clock, ground.year, ground.days, one)).join('');
 }
 
+/** A part of a window that is painted in one colour. */
+interface Painted extends Interval {
+	readonly colour: string;
+}
+
+/** The parts of a window by colour; parts of one colour that touch are one. */
+function paintedParts(
+	window: BowWindow,
+	shades: readonly Shade[] | undefined,
+	colourOf: (share: number, arcDeg: number) => string
+): Painted[] {
+	if (!shades) {
+		return [{ ...window, colour: colourOf(window.peakShare, window.peakArcDeg) }];
+	}
+	const parts: { startMs: number; endMs: number; colour: string }[] = [];
+	for (const { startMs, endMs, share, arcDeg } of shades) {
+		const colour = colourOf(share, arcDeg);
+		const last = parts.at(-1);
+		if (last?.colour === colour) last.endMs = endMs;
+		else parts.push({ startMs, endMs, colour });
+	}
+	return parts;
+}
+
+/** What intervals have in common with one. */
+function within(intervals: readonly Interval[], { startMs, endMs }: Interval): Interval[] {
+	return intervals
+		.filter((one) => one.endMs > startMs && one.startMs < endMs)
+		.map((one) => ({
+			startMs: Math.max(startMs, one.startMs),
+			endMs: Math.min(endMs, one.endMs)
+		}));
+}
+
 /**
  * The windows as one path a colour.
- * @param minimumShare of the plan's rule: a window of just that share is straw, of all eyes amber
+ * @param shades of the first windows, by place; a window without is painted by its peak
+ * @param minimumShare of the plan's rule: just that share is straw, all eyes amber
  */
 export function windowPaths({
 	ground,
 	clock,
 	windows,
+	shades = [],
 	hours,
 	season,
 	colourBy,
@@ -193,6 +230,7 @@ export function windowPaths({
 	ground: Pick<SheetGround, 'year' | 'days'>;
 	clock: LocalClock;
 	windows: readonly BowWindow[];
+	shades?: readonly (readonly Shade[])[];
 	hours: OpeningHours;
 	season: Season | null;
 	colourBy: ColourBy;
@@ -206,28 +244,30 @@ export function windowPaths({
 		path.d += intervalsPath(ground, clock, intervals);
 		found.set(key, path);
 	};
-	for (const window of windows) {
+	const colourOf = (share: number, arcDeg: number) =>
+		strawToAmber(
+			Math.round(colourPart(share, arcDeg, colourBy, minimumShare) * COLOUR_STEPS) / COLOUR_STEPS
+		);
+	for (const [i, window] of windows.entries()) {
 		const inSeason = !season || (window.date >= season.from && window.date <= season.to);
 		const { startMs, endMs } = window;
 		const open = inSeason ? openIntervals({ clock, hours, startMs, endMs }) : [];
-		const colour = windowColour(window, colourBy, minimumShare);
-		paint(colour, true, open);
-		paint(colour, false, uncoveredBow({ windows: [window], slots: open }).parts);
+		const closed = uncoveredBow({ windows: [window], slots: open }).parts;
+		for (const part of paintedParts(window, shades[i], colourOf)) {
+			paint(part.colour, true, within(open, part));
+			paint(part.colour, false, within(closed, part));
+		}
 	}
 	return [...found.values()].filter(({ d }) => d !== '');
 }
 
-/** The colour of a window: straw to amber in steps, by share from the rule's least or by arc. */
-export function windowColour(
-	window: Pick<BowWindow, 'peakShare' | 'peakArcDeg'>,
+/** Where a colour lies between straw (0) and amber (1). */
+function colourPart(
+	share: number,
+	arcDeg: number,
 	colourBy: ColourBy,
 	minimumShare: number
-): string {
-	const part =
-		colourBy === 'arc'
-			? (window.peakArcDeg - 40) / 140
-			: minimumShare >= 1
-				? 1
-				: (window.peakShare - minimumShare) / (1 - minimumShare);
-	return strawToAmber(Math.round(part * COLOUR_STEPS) / COLOUR_STEPS);
+): number {
+	if (colourBy === 'arc') return (arcDeg - 40) / 140;
+	return minimumShare >= 1 ? 1 : (share - minimumShare) / (1 - minimumShare);
 }

@@ -41,6 +41,7 @@ export class SheetSide {
 			ground: this.ground,
 			clock: this.clock,
 			windows: this.run.windows,
+			shades: this.run.shades,
 			hours: selling.pattern.hours,
 			season: selling.season,
 			colourBy,

@@ -1,7 +1,11 @@
 import type { YearAnswer, YearRequest } from './messages';
-import { yearPieces } from './year-pieces';
+import type { BowWindow } from '../optics';
+import { shadesOf, siteOfZone, yearPieces } from './year-pieces';
 
 /** Computes years beside the page: one run at a time, a new one ends the one before. */
+
+/** Windows shaded before a new question is listened for. */
+const WINDOWS_AT_A_TIME = 60;
 
 let current: AbortController | null = null;
 
@@ -11,9 +15,19 @@ async function compute(request: YearRequest & { kind: 'start' }, signal: AbortSi
 	const startedMs = performance.now();
 	const { run, plan, zoneIndex, year } = request;
 	try {
-		for await (const piece of yearPieces({ plan, zoneIndex, year, signal })) {
+		const site = siteOfZone(plan, zoneIndex);
+		const windows: BowWindow[] = [];
+		for await (const piece of yearPieces({ site, year, signal })) {
 			if (signal.aborted) return;
+			windows.push(...piece.windows);
 			answer({ kind: 'piece', run, ...piece, afterMs: performance.now() - startedMs });
+		}
+		for (let i = 0; i < windows.length; i += WINDOWS_AT_A_TIME) {
+			const some = windows.slice(i, i + WINDOWS_AT_A_TIME);
+			answer({ kind: 'shades', run, shades: some.map((window) => shadesOf(site, window)) });
+			// A new question gets in between.
+			await new Promise((resolve) => setTimeout(resolve, 0));
+			if (signal.aborted) return;
 		}
 	} catch (thrown) {
 		if (signal.aborted) return;

@@ -107,6 +107,31 @@ describe('the drawing', () => {
 		]);
 	});
 
+	it('paints the shades of a window, those of one colour together', () => {
+		const start = Date.parse('2027-03-28T07:00:00Z');
+		const minute = (at: number) => start + at * 60_000;
+		const shade = (from: number, to: number, share: number) => ({
+			startMs: minute(from),
+			endMs: minute(to),
+			share,
+			arcDeg: 60
+		});
+		const paths = windowPaths({
+			ground,
+			clock,
+			windows: [window('2027-03-28T07:00:00Z', '2027-03-28T07:30:00Z')],
+			shades: [[shade(0, 10, 0.5), shade(10, 20, 1), shade(20, 30, 0.999)]],
+			hours,
+			season: null,
+			colourBy: 'share',
+			minimumShare: 0.5
+		});
+		expect(paths).toEqual([
+			{ colour: '#f4e7bf', open: true, d: 'M540 86H550v1H540z' },
+			{ colour: '#d88a06', open: true, d: 'M550 86H570v1H550z' }
+		]);
+	});
+
 	it('makes an SVG by itself, with its words escaped', () => {
 		const svg = sheetSvg({
 			title: 'Quarry & <terrace>',
