@@ -105,10 +105,15 @@ function paint({ title, under, ground, daylight, windows }: SheetPicture): Paint
 		);
 	}
 	for (const { fromMinute: from, toMinute: to, firstRow, endRow } of ground.frames) {
-		painted.push(line(x(from), y(firstRow), x(to), y(firstRow), colours.ink, true));
-		painted.push(line(x(from), y(endRow), x(to), y(endRow), colours.ink, true));
-		painted.push(line(x(from), y(firstRow), x(from), y(endRow), colours.ink, true));
-		painted.push(line(x(to), y(firstRow), x(to), y(endRow), colours.ink, true));
+		const sides = [
+			[x(from), y(firstRow), x(to), y(firstRow)],
+			[x(from), y(endRow), x(to), y(endRow)],
+			[x(from), y(firstRow), x(from), y(endRow)],
+			[x(to), y(firstRow), x(to), y(endRow)]
+		] as const;
+		// Dark dashes on a pale line: seen on night and on daylight.
+		painted.push(...sides.map((side) => line(...side, colours.daylight)));
+		painted.push(...sides.map((side) => line(...side, colours.ink, true)));
 	}
 	const changes = ground.changes.map(
 		({ date, forwardMinutes }) =>
@@ -136,7 +141,7 @@ export function sheetSvg(picture: SheetPicture): string {
 		if (one.kind === 'line') {
 			const dash = one.dash
 				? ' stroke-dasharray="4 3" stroke-width="1.5"'
-				: ' stroke-opacity="0.6"';
+				: ` stroke-opacity="${one.stroke === colours.grid ? 0.6 : 1}"`;
 			return `<line x1="${one.x1}" y1="${one.y1}" x2="${one.x2}" y2="${one.y2}" stroke="${one.stroke}"${dash}/>`;
 		}
 		return `<text x="${one.x}" y="${one.y}" font-size="${one.size}" font-weight="${one.weight}" fill="${one.fill}" text-anchor="${one.anchor}">${escaped(one.text)}</text>`;
@@ -183,7 +188,7 @@ export async function sheetPng(picture: SheetPicture): Promise<Blob> {
 			pen.fill(new Path2D(one.d));
 		} else if (one.kind === 'line') {
 			pen.strokeStyle = one.stroke;
-			pen.globalAlpha = one.dash ? 1 : 0.6;
+			pen.globalAlpha = one.stroke === colours.grid ? 0.6 : 1;
 			pen.lineWidth = one.dash ? 1.5 : 1;
 			pen.setLineDash(one.dash ? [4, 3] : []);
 			pen.beginPath();

@@ -28,7 +28,7 @@ export type ColourBy = 'share' | 'arc';
 /** Windows of one colour. */
 export interface ColouredPath {
 	readonly colour: string;
-	/** Inside the opening hours and the season; the others are painted paler. */
+	/** Inside the opening hours and the season; the others are painted fainter. */
 	readonly open: boolean;
 	readonly d: string;
 }
@@ -84,7 +84,7 @@ function framesOf(year: number, days: number, hours: OpeningHours, season: Seaso
 	const firstRow = season ? Math.max(0, rowOf(year, season.from)) : 0;
 	const endRow = season ? Math.min(days, rowOf(year, season.to) + 1) : days;
 	if (firstRow >= endRow) return [];
-	// The frame holds all weekdays: what is closed on some of them is painted paler inside it.
+	// The frame holds all weekdays: what is closed on some of them is painted fainter inside it.
 	const spans = hours.weekdays.flat();
 	return uniteIntervals(
 		spans.map(({ fromMinute, toMinute }) => ({ startMs: fromMinute, endMs: toMinute }))
