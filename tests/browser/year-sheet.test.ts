@@ -147,6 +147,12 @@ test('a planner reads, walks, saves and compares a year', async ({ page }) => {
 		await page.context().setOffline(false);
 		await expectAccessible(page);
 	});
+
+	await test.step('the address keeps the day', async () => {
+		await expect(page).toHaveURL(/day=2027-07-01/);
+		await page.reload();
+		await expect(page.getByRole('heading', { name: 'Thursday 1 July' })).toBeVisible();
+	});
 });
 
 test('a year that is being computed can be stopped and begun again', async ({ page }) => {

@@ -100,8 +100,8 @@ export class SheetChoices {
 
 	/** Takes hours, slots and season of a programme, or goes back to typed hours. */
 	takeProgramme(id: string): void {
-		this.programmeId = id;
 		const found = this.programmes.find((one) => one.id === id);
+		this.programmeId = found?.id ?? TYPED;
 		if (!found) return;
 		this.zone = found.zone;
 		this.onlySeason = false;

@@ -29,6 +29,8 @@ export class Comparison {
 	readonly #base: () => Plan;
 	readonly #versions: () => readonly { version: number; body: Plan }[];
 	#lastRight: Plan | null = null;
+	/** The plan that the fields began as. */
+	#editedBase: Plan | null = null;
 
 	constructor(base: () => Plan, versions: () => readonly { version: number; body: Plan }[]) {
 		this.#base = base;
@@ -39,15 +41,16 @@ export class Comparison {
 		return this.with === 'what-if' ? 'what-if' : `version ${this.with}`;
 	}
 
-	/** Chooses what to compare with; a what-if begins as the plan stands. */
+	/** Chooses what to compare with; a what-if begins as the plan stands, or goes on as it was left. */
 	choose(value: string): void {
-		if (value === 'what-if') this.reset();
+		if (value === 'what-if' && this.#editedBase !== this.#base()) this.reset();
 		this.with = value;
 	}
 
 	/** The what-if is the plan again, as also when another version is chosen as its base. */
 	reset(): void {
 		this.#lastRight = null;
+		this.#editedBase = this.#base();
 		this.fields = whatIfFields(this.#base());
 	}
 }
