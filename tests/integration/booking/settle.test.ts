@@ -36,7 +36,10 @@ const freshSlot = () => shop.slots[next++]!;
 beforeAll(async () => {
 	shop = await openShop();
 });
-beforeEach(emptyQueue);
+beforeEach(async () => {
+	await emptyQueue();
+	await clearFaults();
+});
 
 const ticketsOf = (orderId: string) =>
 	shop.asOwner((tx) => tx.sql.query.ticket.findMany({ where: eq(ticket.orderId, orderId) }));
