@@ -185,6 +185,13 @@ export function parsePrices(
 	return { prices };
 }
 
+export const waterSchema = z.object({
+	kind: z.enum(['disinfection', 'sample', 'inspection']),
+	doneOn: localDate,
+	nextDueOn: z.union([z.literal(''), localDate]).default(''),
+	note: text(1000).default('')
+});
+
 export const publishSchema = z.object({ digest: z.string().min(1).max(64) });
 
 export const sellerSchema = z.object({
