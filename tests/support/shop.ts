@@ -199,3 +199,8 @@ export async function layFaults(
 ) {
 	await askDouble('faults', faults);
 }
+
+/** Lets the payment double work as it should again. */
+export async function clearFaults(): Promise<void> {
+	await fetch(`${process.env.PAYMENT_API_URL}/_double/faults`, { method: 'DELETE' });
+}

@@ -12,10 +12,11 @@ import { handlePaymentEvent, takeEvent } from '../../../src/lib/server/payments/
 import { sendAskedRefund } from '../../../src/lib/server/payments/refunds.ts';
 import { lettersTo } from '../../support/letters.ts';
 import { newAddress } from '../../support/people.ts';
-import { emptyQueue } from '../../support/queue.ts';
+import { emptyQueue, jobWithKey } from '../../support/queue.ts';
 import {
 	atService,
 	buy,
+	clearFaults,
 	hold,
 	lapse,
 	layFaults,
@@ -35,7 +36,10 @@ const freshSlot = () => shop.slots[next++]!;
 beforeAll(async () => {
 	shop = await openShop();
 });
-beforeEach(emptyQueue);
+beforeEach(async () => {
+	await emptyQueue();
+	await clearFaults();
+});
 
 const ticketsOf = (orderId: string) =>
 	shop.asOwner((tx) => tx.sql.query.ticket.findMany({ where: eq(ticket.orderId, orderId) }));
@@ -128,6 +132,12 @@ test('the service’s answer lost after it did the work: one session, one charge
 });
 
 describe('a hold that lapses', () => {
+	test('is ended by a job at that very instant', async () => {
+		const orderId = await hold(shop, freshSlot().id);
+		const job = await jobWithKey(`hold-${orderId}`);
+		expect(job?.runAt).toEqual((await readOrderRow(shop, orderId)).holdUntil);
+	});
+
 	test('gives its places back, and its session can no longer be paid', async () => {
 		const { id } = freshSlot();
 		const orderId = await hold(shop, id, { adults: 5 });
@@ -210,9 +220,10 @@ describe('refunds', () => {
 		await settleOrder(shop.operatorId, late, 'event');
 		const [asked] = await refundsOf(late);
 		// More often than the client itself tries again: the job fails and comes back.
-		await layFaults({ match: 'POST /v1/refunds', fault: 'drop-after-commit', times: 3 });
+		await layFaults({ match: 'POST /v1/refunds', fault: 'drop-after-commit', times: 10 });
 		const job = { operatorId: shop.operatorId, refundId: asked!.id };
 		await expect(sendAskedRefund(job, { number: 1, of: 25 })).rejects.toThrow();
+		await clearFaults();
 		await sendAskedRefund(job, { number: 2, of: 25 });
 		await sendAskedRefund(job, { number: 3, of: 25 });
 		expect(await refundsOf(late)).toMatchObject([{ status: 'done' }]);
