@@ -62,7 +62,9 @@ export function litParts(site: Site, eye: Eye, sun: SunPosition): LitPart[] {
 	return seenArcs({ site, eye, sun, spacingDeg: 4 }).flatMap(({ curtainIndex, points }) => {
 		const along = points.map(({ alongM }) => alongM);
 		if (along.length < 2) return [];
-		return [{ curtainIndex, startM: Math.min(...along), endM: Math.max(...along) }];
+		// The ends are exact but for rounding: minus zero would be written as -0.0.
+		const startM = Math.max(0, Math.min(...along));
+		return [{ curtainIndex, startM, endM: Math.max(...along) }];
 	});
 }
 
