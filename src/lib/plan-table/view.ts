@@ -57,7 +57,7 @@ export function fitted(plan: Plan, widthPx: number, heightPx: number): View {
 	const ys = places.map(([, y]) => y);
 	const [west, east] = [Math.min(...xs), Math.max(...xs)];
 	const [south, north] = [Math.min(...ys), Math.max(...ys)];
-	const marginPx = Math.min(96, widthPx * 0.14);
+	const marginPx = Math.min(60, widthPx * 0.11);
 	return {
 		centre: [(west + east) / 2, (south + north) / 2],
 		pxPerM: withinScale(
