@@ -60,10 +60,17 @@ export function dayBand({
 	};
 }
 
-/** Straw to amber by arc, for bands too small to read a spectrum in. */
+/** From straw #F4E7BF (0) to amber #D88A06 (1), for bands too small to read a spectrum in: `#rrggbb`. */
+export function strawToAmber(part: number): string {
+	const held = Math.min(1, Math.max(0, part));
+	const mix = (from: number, to: number) =>
+		Math.round(from + (to - from) * held)
+			.toString(16)
+			.padStart(2, '0');
+	return `#${mix(0xf4, 0xd8)}${mix(0xe7, 0x8a)}${mix(0xbf, 0x06)}`;
+}
+
+/** Straw to amber by arc: 40 degrees and 180. */
 export function arcColour(arcDeg: number): string {
-	const part = Math.min(1, Math.max(0, (arcDeg - 40) / 140));
-	const mix = (from: number, to: number) => Math.round(from + (to - from) * part);
-	// From #F4E7BF to #D88A06.
-	return `rgb(${mix(0xf4, 0xd8)} ${mix(0xe7, 0x8a)} ${mix(0xbf, 0x06)})`;
+	return strawToAmber((arcDeg - 40) / 140);
 }

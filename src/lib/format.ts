@@ -37,6 +37,16 @@ export function formatDayShort(date: string): string {
 	return localDate(date, { weekday: 'short', day: 'numeric', month: 'short' });
 }
 
+/** A month `YYYY-MM`: December. */
+export function formatMonth(month: string): string {
+	return localDate(`${month}-01`, { month: 'long' });
+}
+
+/** A month `YYYY-MM`, short: Dec. */
+export function formatMonthShort(month: string): string {
+	return localDate(`${month}-01`, { month: 'short' });
+}
+
 function localDate(date: string, options: Intl.DateTimeFormatOptions): string {
 	// A calendar date has no zone: it is set and read in UTC.
 	const format = new Intl.DateTimeFormat('en-GB', { ...options, timeZone: 'UTC' });
@@ -70,4 +80,19 @@ export function formatMinutes(minutes: number): string {
 /** A count with its noun: 1 place, 3 places. */
 export function formatCount(count: number, one: string, many = `${one}s`): string {
 	return `${count.toLocaleString('en-GB')} ${count === 1 ? one : many}`;
+}
+
+/** A number with the thousands parted: 4,210; with digits after the point where asked. */
+export function formatNumber(value: number, digits = 0): string {
+	return value.toLocaleString('en-GB', {
+		minimumFractionDigits: digits,
+		maximumFractionDigits: digits
+	});
+}
+
+/** A whole number with its sign: +12, −3, 0. */
+export function formatSigned(value: number): string {
+	const whole = Math.round(value);
+	if (whole === 0) return '0';
+	return `${whole > 0 ? '+' : '−'}${formatNumber(Math.abs(whole))}`;
 }

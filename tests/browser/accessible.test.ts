@@ -29,6 +29,19 @@ test('the pages of a visitor', async ({ page }) => {
 	expect(seen.length).toBeGreaterThan(2);
 });
 
+test('the gate of a steward and the money of a bookkeeper', async ({ page }) => {
+	test.slow();
+	for (const role of ['steward', 'bookkeeper'] as const) {
+		await signIn(page, role);
+		const desk = await demoDesk(page);
+		for (const path of [desk, `${desk}/${role === 'steward' ? 'gate' : 'money'}`]) {
+			await page.goto(path);
+			await expectAccessible(page);
+		}
+		await page.context().clearCookies();
+	}
+});
+
 test('the pages of an account', async ({ page }) => {
 	test.slow();
 	await signIn(page, 'owner');

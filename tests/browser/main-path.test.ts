@@ -1,7 +1,16 @@
 import { readFileSync } from 'node:fs';
 import type { Browser } from '@playwright/test';
 import { caughtFor } from '../support/letters.ts';
-import { expect, linkIn, letterTo, signIn, test, type DemoRole, type Page } from './helpers.ts';
+import {
+	expect,
+	expectAccessible,
+	linkIn,
+	letterTo,
+	signIn,
+	test,
+	type DemoRole,
+	type Page
+} from './helpers.ts';
 
 /** The whole path, as its users walk it: planner, visitor, steward, planner again, bookkeeper. */
 
@@ -33,10 +42,10 @@ test('from a bare place to the money in the ledger', async ({ browser }) => {
 		await planner.getByLabel('Longitude').fill('6,8745');
 		await planner.getByLabel('Elevation').fill('512');
 		await planner.getByRole('button', { name: 'Set up the site' }).click();
-		await expect(planner.getByText('Give the latitude from -90 to 90.')).toBeVisible();
+		await expect(planner.getByText(/Give the latitude from -90 to 90/)).toBeVisible();
 		// Nothing that was typed is lost.
 		await expect(planner.getByLabel('Name')).toHaveValue('Weir meadow');
-		await planner.getByLabel('Latitude').fill('45.9312');
+		await planner.getByLabel('Latitude').fill('45° 55\' 52.32" N');
 		await planner.getByRole('button', { name: 'Set up the site' }).click();
 		await expect(planner.getByRole('heading', { level: 1 })).toHaveText('Weir meadow');
 		// The zone is found from the coordinates.
@@ -197,6 +206,7 @@ test('from a bare place to the money in the ledger', async ({ browser }) => {
 		await visitor.getByRole('link', { name: 'Pay 58.00 EUR' }).click();
 		await payWith(visitor, '4242424242424242');
 		await expect(visitor.getByRole('heading', { level: 1 })).toHaveText('You are expected');
+		await expectAccessible(visitor);
 	});
 
 	await test.step('the weather turns: the planner calls the slot off and sees it through', async () => {
@@ -211,6 +221,7 @@ test('from a bare place to the money in the ledger', async ({ browser }) => {
 		await expect(
 			planner.getByText('Refund 1 order, 58.00 EUR, and write to 1 visitor (4 places).')
 		).toBeVisible();
+		await expectAccessible(planner);
 		await planner.getByLabel('Reason').fill('no');
 		await planner.getByRole('button', { name: 'Call off 1 slot' }).click();
 		await expect(

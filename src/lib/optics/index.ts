@@ -17,5 +17,7 @@ export {
 } from './instant';
 export { bowTopDeg, seenArcs, type CurtainPoint, type SeenArc } from './seen-arcs';
 export { findWindows, zoneWindows, type BowWindow, type ZoneWindows } from './windows';
+export { buildingAltitudeDeg, withBuilding, type SkylineCorners } from './skyline';
+export { createHorizon, type Horizon } from './horizon';
 export { daylight } from './daylight';
 export { shareOverDay, windowsInPieces, type ShareMoment, type WindowsPiece } from './series';

@@ -14,3 +14,13 @@ export {
 	type OpeningSpan
 } from './opening';
 export { layOutSlots, uncoveredBow, type LaidSlot, type SlotPattern } from './slots';
+export { clockChanges, wallParts, type ClockChange, type WallPart } from './wall-parts';
+export {
+	monthsOf,
+	totalsDifference,
+	yearTotals,
+	type MonthTotals,
+	type Season,
+	type Totals,
+	type YearTotals
+} from './year-totals';

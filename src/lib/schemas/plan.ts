@@ -111,7 +111,8 @@ const zoneSchema = fields({
 	eyeHeights: list(number({ least: 0, greatest: 100 }), { least: 1, most: 20 })
 });
 
-const skylineSchema = list(
+/** The skyline alone, for what is being typed. */
+export const skylineSchema = list(
 	z.tuple([number({ least: 0, greatest: 360 }), number({ least: -90, greatest: 90 })], {
 		error: (issue) =>
 			issue.input === undefined ? 'is missing' : 'must be [azimuth, altitude] in degrees'

@@ -1,4 +1,5 @@
 import { z } from 'zod';
+import { parseCoordinate, type Axis } from '../coordinates';
 import { isCurrency, parseAmount, rateBasisPoints } from '../money';
 import { isLocalDate, isTimeZone, parseTimeOfDay } from '../schedule';
 import { emailField } from './people';
@@ -15,6 +16,23 @@ const decimal = (what: string, least: number, greatest: number) =>
 			(value) => value >= least && value <= greatest,
 			`Give ${what} from ${least} to ${greatest}.`
 		);
+
+/** Degrees, decimal or in minutes and seconds. */
+const coordinate = (axis: Axis) =>
+	z
+		.string()
+		.trim()
+		.max(60, 'That is too long.')
+		.transform((text, context) => {
+			const degrees = parseCoordinate(text, axis);
+			if (degrees !== null) return degrees;
+			const most = axis === 'latitude' ? 90 : 180;
+			context.addIssue({
+				code: 'custom',
+				message: `Give the ${axis} from -${most} to ${most}, such as ${axis === 'latitude' ? '45.9312 or 45 55 52 N' : '6.8745 or 6 52 28 E'}.`
+			});
+			return z.NEVER;
+		});
 
 const whole = (what: string, least: number, greatest: number) =>
 	z
@@ -39,8 +57,8 @@ const text = (most: number) => z.string().trim().max(most, `Use at most ${most} 
 
 const placeShape = {
 	name: line('the site’s name'),
-	latitudeDeg: decimal('the latitude', -90, 90),
-	longitudeDeg: decimal('the longitude', -180, 180),
+	latitudeDeg: coordinate('latitude'),
+	longitudeDeg: coordinate('longitude'),
 	elevationM: decimal('the elevation', -500, 9000),
 	currency: z
 		.string()
@@ -166,6 +184,13 @@ export function parsePrices(
 	if (prices.length === 0) return { fault: 'Give at least one price.' };
 	return { prices };
 }
+
+export const waterSchema = z.object({
+	kind: z.enum(['disinfection', 'sample', 'inspection']),
+	doneOn: localDate,
+	nextDueOn: z.union([z.literal(''), localDate]).default(''),
+	note: text(1000).default('')
+});
 
 export const publishSchema = z.object({ digest: z.string().min(1).max(64) });
 

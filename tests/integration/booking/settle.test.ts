@@ -12,7 +12,7 @@ import { handlePaymentEvent, takeEvent } from '../../../src/lib/server/payments/
 import { sendAskedRefund } from '../../../src/lib/server/payments/refunds.ts';
 import { lettersTo } from '../../support/letters.ts';
 import { newAddress } from '../../support/people.ts';
-import { emptyQueue } from '../../support/queue.ts';
+import { emptyQueue, jobWithKey } from '../../support/queue.ts';
 import {
 	atService,
 	buy,
@@ -36,7 +36,10 @@ const freshSlot = () => shop.slots[next++]!;
 beforeAll(async () => {
 	shop = await openShop();
 });
-beforeEach(emptyQueue);
+beforeEach(async () => {
+	await emptyQueue();
+	await clearFaults();
+});
 
 const ticketsOf = (orderId: string) =>
 	shop.asOwner((tx) => tx.sql.query.ticket.findMany({ where: eq(ticket.orderId, orderId) }));
@@ -129,6 +132,12 @@ test('the service’s answer lost after it did the work: one session, one charge
 });
 
 describe('a hold that lapses', () => {
+	test('is ended by a job at that very instant', async () => {
+		const orderId = await hold(shop, freshSlot().id);
+		const job = await jobWithKey(`hold-${orderId}`);
+		expect(job?.runAt).toEqual((await readOrderRow(shop, orderId)).holdUntil);
+	});
+
 	test('gives its places back, and its session can no longer be paid', async () => {
 		const { id } = freshSlot();
 		const orderId = await hold(shop, id, { adults: 5 });

@@ -3,7 +3,7 @@ import { afterAll, beforeAll, beforeEach, expect, test } from 'vitest';
 import { sendSignal } from '../../../docker-free-dev/lib/processes.ts';
 import { ledgerEntry, order, ticket } from '../../../src/lib/server/db/schema/index.ts';
 import { askDouble } from '../../../src/lib/server/demo/orders.ts';
-import { readBalance } from '../../../src/lib/server/payments/gateway.ts';
+import { readBalance } from '../../../src/lib/server/payments/gateway/index.ts';
 import { ledgerBalance, syncLedger } from '../../../src/lib/server/payments/ledger.ts';
 import { failedRefunds, retryRefund } from '../../../src/lib/server/payments/refunds.ts';
 import {
@@ -19,6 +19,7 @@ import { refusalOf } from '../../support/refusals.ts';
 import {
 	atService,
 	buy,
+	clearFaults,
 	hold,
 	layFaults,
 	openCheckoutOf,
@@ -33,8 +34,12 @@ let worker: TestProcess | undefined;
 beforeAll(async () => {
 	shop = await openShop();
 });
-beforeEach(emptyQueue);
+beforeEach(async () => {
+	await emptyQueue();
+	await clearFaults();
+});
 afterAll(async () => {
+	await clearFaults();
 	await worker?.stop();
 });
 

@@ -8,7 +8,7 @@ import { readPaymentAccount } from '../payments/accounts';
 import { openCheckout } from '../payments/gateway';
 import { visitorPath } from './visitor-key';
 
-/** The service keeps a session open for half an hour at least; holds end it earlier. */
+/** The service wants a session to stay open for half an hour from its making; holds end it earlier. */
 const sessionMinutes = 31;
 
 /**
@@ -45,8 +45,9 @@ export async function checkoutAddress(
 		currency: found.currency,
 		lines: lines.filter((line) => line.grossMinor > 0),
 		applicationFeeMinor: Math.floor((found.totalMinor * account.platformFeeBasisPoints) / 10_000),
-		// Counted from the order, not from now: the same request must be the same at every try.
-		closesAt: new Date(found.createdAt.getTime() + sessionMinutes * 60_000),
+		// Counted from the hold's end, before which it is made, and not from now: the same request must be
+		// the same at every try.
+		closesAt: new Date(found.holdUntil.getTime() + sessionMinutes * 60_000),
 		returnUrl: env().ORIGIN + visitorPath(operator, orderId)
 	});
 	await inTenant(operatorId, origin, (tx) =>

@@ -10,6 +10,8 @@ const columns = {
 	localDate: slot.localDate,
 	startsAt: slot.startsAt,
 	endsAt: slot.endsAt,
+	windowStartsAt: slot.windowStartsAt,
+	windowEndsAt: slot.windowEndsAt,
 	status: slot.status,
 	capacity: slot.capacity,
 	held: slot.held,

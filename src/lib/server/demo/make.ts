@@ -1,3 +1,4 @@
+import { addDays, localClock } from '../../schedule';
 import { inTenant } from '../db/transaction';
 import {
 	changeSeller,
@@ -5,6 +6,7 @@ import {
 	refreshAccount,
 	openPaymentAccount
 } from '../payments/accounts';
+import { addWaterEntry } from '../sites/water';
 import { askForForecast } from '../weather/watch';
 import { askDouble, makeDemoOrders } from './orders';
 import { makeDemoPeople } from './people';
@@ -77,6 +79,20 @@ export async function makeDemo(now: Date) {
 		{ siteId: quarry.siteId, timeZone: quarryPlan.timeZone },
 		now
 	);
+	const today = localClock(quarryPlan.timeZone).dateAt(now.getTime());
+	for (const [kind, ago, note] of [
+		['sample', 20, 'Laboratory of the district, nothing found.'],
+		['disinfection', 6, 'Tank, lines and nozzles.']
+	] as const) {
+		await inTenant(operatorId, origin, (tx) =>
+			addWaterEntry(
+				tx,
+				quarry.slug,
+				{ kind, doneOn: addDays(today, -ago), nextDueOn: addDays(today, 30 - ago), note },
+				now
+			)
+		);
+	}
 	for (const { siteId } of [quarry, kiln]) {
 		await inTenant(operatorId, origin, (tx) => askForForecast(tx, siteId));
 	}

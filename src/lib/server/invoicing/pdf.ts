@@ -1,50 +1,26 @@
-import { createRequire } from 'node:module';
-import PDFDocument from 'pdfkit';
 import { formatMoney } from '../../money';
 import { formatDate, formatPercent } from '../../format';
+import { drawPdf, paper } from '../pdf';
 import type { IssuedDocument } from './documents';
 
 const titles = { receipt: 'Receipt', invoice: 'Invoice', credit_note: 'Credit note' } as const;
 
-// The interface's own font is cut into one file for each script, and names may need any of them.
-const require = createRequire(import.meta.url);
-const ink = '#14232A';
-const quiet = '#4A5D64';
-const hairline = '#D3DEDB';
+const { ink, quiet, hairline } = paper;
 
 const left = 56;
 const right = 539;
 
 /** A document as PDF, A4. The same document gives the same page at any time. */
 export function documentPdf(issued: IssuedDocument): Promise<Buffer> {
-	const pdf = new PDFDocument({
-		size: 'A4',
-		margin: left,
-		info: {
-			Title: `${titles[issued.kind]} ${issued.number}`,
-			Author: issued.seller.name,
-			CreationDate: issued.createdAt,
-			ModDate: issued.createdAt
-		},
-		lang: 'en'
-	});
-	const parts: Buffer[] = [];
-	pdf.on('data', (part: Buffer) => parts.push(part));
-	const done = new Promise<Buffer>((resolve, reject) => {
-		pdf.on('end', () => resolve(Buffer.concat(parts)));
-		pdf.on('error', reject);
-	});
-	pdf.registerFont('text', fontFile('DejaVuSans'));
-	pdf.registerFont('heavy', fontFile('DejaVuSans-Bold'));
-	drawHead(pdf, issued);
-	drawLines(pdf, issued);
-	drawSums(pdf, issued);
-	pdf.end();
-	return done;
-}
-
-function fontFile(name: string): string {
-	return require.resolve(`dejavu-fonts-ttf/ttf/${name}.ttf`);
+	const { number, kind, seller, createdAt } = issued;
+	return drawPdf(
+		{ title: `${titles[kind]} ${number}`, author: seller.name, made: createdAt },
+		(pdf) => {
+			drawHead(pdf, issued);
+			drawLines(pdf, issued);
+			drawSums(pdf, issued);
+		}
+	);
 }
 
 function drawHead(pdf: PDFKit.PDFDocument, issued: IssuedDocument): void {

@@ -6,6 +6,7 @@ import { handlePaymentEvent } from '../payments/events';
 import { syncLedger } from '../payments/ledger';
 import { sendAskedRefund } from '../payments/refunds';
 import { computeWindows } from '../sites/compute';
+import { remindOfWater } from '../sites/water';
 import { callOffOrder } from '../weather/call-off';
 import { readForecast, readForecasts } from '../weather/watch';
 
@@ -21,6 +22,7 @@ export interface TaskPayloads {
 	compute_windows: { operatorId: string; computationId: string };
 	read_forecast: { operatorId: string; siteId: string };
 	read_forecasts: Record<string, never>;
+	remind_of_water: Record<string, never>;
 }
 
 /** How often a job was tried, this time included, and how often it may be. */
@@ -42,7 +44,8 @@ export const handlers: { [Task in keyof TaskPayloads]: Handler<TaskPayloads[Task
 	call_off_order: callOffOrder,
 	compute_windows: computeWindows,
 	read_forecast: readForecast,
-	read_forecasts: readForecasts
+	read_forecasts: readForecasts,
+	remind_of_water: remindOfWater
 };
 
 /** The attempt that graphile-worker's helpers speak of. */

@@ -49,7 +49,8 @@ export async function startWorker(concurrency = 4): Promise<Worker> {
 		concurrency,
 		noHandleSignals: true,
 		pollInterval: 1000,
-		crontab: '17 * * * * delete_expired {}\n*/30 * * * * read_forecasts {}',
+		crontab:
+			'17 * * * * delete_expired {}\n*/30 * * * * read_forecasts {}\n5 6 * * * remind_of_water {}',
 		logger: new Logger(() => (level, message, meta) => {
 			// Messages of jobs, done or failed, would repeat what is logged below.
 			if (level === 'error' && !message.startsWith('Failed task')) {

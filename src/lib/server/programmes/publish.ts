@@ -1,5 +1,6 @@
 import { and, eq, gt, inArray, ne, or } from 'drizzle-orm';
 import { createHash } from 'node:crypto';
+import { localClock } from '../../schedule';
 import { addToTrail } from '../audit/trail';
 import { demand } from '../auth/rights';
 import { violates } from '../db/errors';
@@ -9,6 +10,7 @@ import { Refusal } from '../failures';
 import { sellingObstacles } from '../payments/accounts';
 import { findComputation, readWindows } from '../sites/compute';
 import { demandSite, livePlan } from '../sites/sites';
+import { waterWarnings } from '../sites/water';
 import { viewFrom, type ViewAt } from '../sites/view';
 import { findDifference, type Difference } from './difference';
 import { demandProgramme } from './programmes';
@@ -20,6 +22,8 @@ export interface Preview {
 	digest: string;
 	/** Why it can not be sold yet, in words. */
 	obstacles: string[];
+	/** What should be looked at before people breathe the mist; it stops nothing. */
+	cautions: string[];
 }
 
 /** What publishing a programme would do now. */
@@ -33,9 +37,11 @@ export async function previewProgramme(
 	const { programme: found, prices } = await demandProgramme(tx, site.id, programmeId);
 	const obstacles = await sellingObstacles(tx);
 	if (prices.length === 0) obstacles.push('The programme has no price.');
+	const today = localClock(site.timeZone).dateAt(now.getTime());
+	const cautions = await waterWarnings(tx, site.id, today);
 	const season = { from: found.seasonFrom, to: found.seasonTo };
 	const computed = await findComputation(tx, site.id, season);
-	if (!computed) return { difference: null, digest: '', obstacles };
+	if (!computed) return { difference: null, digest: '', obstacles, cautions };
 	const windows = await readWindows(tx, computed.id, { ...season, zoneId: found.zoneId });
 	const slots = await tx.sql.query.slot.findMany({
 		where: and(
@@ -54,7 +60,7 @@ export async function previewProgramme(
 		slots,
 		now
 	});
-	return { difference, digest: digestOf(difference), obstacles };
+	return { difference, digest: digestOf(difference), obstacles, cautions };
 }
 
 function calledOffByWeather(tx: TenantTx) {

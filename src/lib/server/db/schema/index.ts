@@ -4,6 +4,7 @@ export * from './operators';
 export * from './letters';
 export * from './trail';
 export * from './sites';
+export * from './water';
 export * from './programmes';
 export * from './weather';
 export * from './orders';

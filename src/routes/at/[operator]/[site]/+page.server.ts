@@ -1,15 +1,16 @@
 import { error } from '@sveltejs/kit';
 import { bowStrip } from '$lib/bow-strip';
 import { dayBand } from '$lib/day-band';
+import { groupBy } from '$lib/group-by';
 import { addDays, isLocalDate, localClock } from '$lib/schedule';
 import {
 	findOpenSite,
 	listPrices,
 	listSaleDates,
 	listSlotsForSale,
-	placesLeft
+	placesLeft,
+	type SlotForSale
 } from '$lib/server/booking/slots-for-sale';
-import { windowsOfSite } from '$lib/server/sites/compute';
 import { asVisitor } from '$lib/server/visitor';
 import type { PageServerLoad } from './$types';
 
@@ -37,10 +38,6 @@ export const load: PageServerLoad = async (event) =>
 						until: shown.at(-1)!
 					})
 				: [];
-		const windows =
-			shown.length > 0
-				? await windowsOfSite(tx, site.id, { from: shown[0]!, to: shown.at(-1)! })
-				: [];
 		const prices = new Map<string, Awaited<ReturnType<typeof listPrices>>>();
 		for (const { programmeId } of slots) {
 			if (!prices.has(programmeId)) prices.set(programmeId, await listPrices(tx, programmeId));
@@ -64,7 +61,7 @@ export const load: PageServerLoad = async (event) =>
 				const own = slots.filter(({ localDate }) => localDate === date);
 				return {
 					date,
-					band: dayBand({ site, date, windows, slots: own }),
+					band: dayBand({ site, date, windows: windowsOf(own), slots: own }),
 					strip: own[0] ? bowStrip(own[0].dropDiameterUm) : null,
 					slots: own.map((slot) => ({
 						id: slot.id,
@@ -82,3 +79,12 @@ export const load: PageServerLoad = async (event) =>
 			})
 		};
 	});
+
+/** The windows that slots lie in, once each. */
+function windowsOf(slots: SlotForSale[]) {
+	return groupBy(slots, ({ windowStartsAt }) => windowStartsAt.getTime()).map(([, own]) => ({
+		startsAt: own[0]!.windowStartsAt,
+		endsAt: own[0]!.windowEndsAt,
+		peakArcDeg: Math.max(...own.map(({ arcDeg }) => arcDeg))
+	}));
+}

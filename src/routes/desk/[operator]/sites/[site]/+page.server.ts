@@ -1,4 +1,5 @@
 import { fail, redirect } from '@sveltejs/kit';
+import { localClock } from '$lib/schedule';
 import { emptySchema } from '$lib/schemas/people';
 import { siteSchema } from '$lib/schemas/site';
 import { readPlan } from '$lib/schemas/plan';
@@ -9,6 +10,7 @@ import { listProgrammes } from '$lib/server/programmes/programmes';
 import { listComputations } from '$lib/server/sites/compute';
 import { changePicture, readPicture } from '$lib/server/sites/pictures';
 import { addPlan, listPlans } from '$lib/server/sites/plans';
+import { waterWarnings } from '$lib/server/sites/water';
 import { changeSite, demandSite, wasEverLive } from '$lib/server/sites/sites';
 import type { Actions, PageServerLoad } from './$types';
 
@@ -22,7 +24,12 @@ export const load: PageServerLoad = async (event) => {
 				placeFixed: await wasEverLive(tx, site.id),
 				plans: await listPlans(tx, site.id),
 				computations: await listComputations(tx, site.id),
-				programmes: await listProgrammes(tx, site.id)
+				programmes: await listProgrammes(tx, site.id),
+				waterWarnings: await waterWarnings(
+					tx,
+					site.id,
+					localClock(site.timeZone).dateAt(Date.now())
+				)
 			};
 		})
 	);

@@ -1,4 +1,5 @@
 import { fail, redirect } from '@sveltejs/kit';
+import { localClock } from '$lib/schedule';
 import { fieldsFromPlan, planFromFields, type PlanFields } from '$lib/schemas/plan-form';
 import { Refusal } from '$lib/server/failures';
 import { inDesk, orError } from '$lib/server/http';
@@ -17,6 +18,7 @@ export const load: PageServerLoad = async (event) => {
 	return {
 		site: { slug: site.slug, name: site.name },
 		version: plan.version,
+		today: localClock(site.timeZone).dateAt(Date.now()),
 		state: plan.state,
 		revision: plan.revision,
 		everLive: plan.liveSince !== null,

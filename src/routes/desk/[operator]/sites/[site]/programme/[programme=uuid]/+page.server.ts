@@ -57,6 +57,7 @@ export const load: PageServerLoad = async (event) => {
 		running: running ? { daysDone: running.daysDone, daysTotal: running.daysTotal } : null,
 		digest: preview.digest,
 		obstacles: preview.obstacles,
+		cautions: preview.cautions,
 		difference: difference && {
 			added: difference.added.map(interval),
 			kept: difference.kept.map(({ slot, capacity }) => ({
