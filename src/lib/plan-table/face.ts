@@ -1,4 +1,4 @@
-import { seenArcs, type Eye, type Site, type SunPosition } from '../optics';
+import type { Eye, SeenArc, Site } from '../optics';
 import type { Place } from './geometry';
 
 /** The bow as it stands on one curtain for an eye: metres along it and above datum. */
@@ -10,10 +10,9 @@ export interface FaceArc {
 	metresPerDeg: number;
 }
 
-/** The bow on the curtains' faces, for an eye under a sun that is up; else nothing. */
-export function faceArcs(site: Site, eye: Eye, sun: SunPosition): FaceArc[] {
-	if (!(sun.altitudeDeg > 0)) return [];
-	return seenArcs({ site, eye, sun }).flatMap(({ curtainIndex, points }) => {
+/** The bow on the curtains' faces. */
+export function faceArcs(arcs: readonly SeenArc[], eye: Eye): FaceArc[] {
+	return arcs.flatMap(({ curtainIndex, points }) => {
 		const first = points[0];
 		if (!first || points.length < 2) return [];
 		const farM = Math.hypot(first.x - eye.x, first.y - eye.y, first.z - eye.z);

@@ -3,6 +3,7 @@ import {
 	seenArcs,
 	sunIsUp,
 	type Eye,
+	type SeenArc,
 	type Site,
 	type SiteState,
 	type SunPosition,
@@ -56,10 +57,14 @@ export interface LitPart {
 	endM: number;
 }
 
-/** Which parts of which curtains carry the bow for an eye. Nothing when the sun is not up. */
-export function litParts(site: Site, eye: Eye, sun: SunPosition): LitPart[] {
-	if (!(sun.altitudeDeg > 0)) return [];
-	return seenArcs({ site, eye, sun, spacingDeg: 4 }).flatMap(({ curtainIndex, points }) => {
+/** The pieces of the bow that an eye sees, fine enough to draw. Nothing when the sun is not up. */
+export function arcsFor(site: Site, eye: Eye, sun: SunPosition): SeenArc[] {
+	return sun.altitudeDeg > 0 ? seenArcs({ site, eye, sun, spacingDeg: 4 }) : [];
+}
+
+/** Which parts of which curtains carry the bow. */
+export function litParts(arcs: readonly SeenArc[]): LitPart[] {
+	return arcs.flatMap(({ curtainIndex, points }) => {
 		const along = points.map(({ alongM }) => alongM);
 		if (along.length < 2) return [];
 		// The ends are exact but for rounding: minus zero would be written as -0.0.

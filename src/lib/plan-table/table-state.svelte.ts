@@ -3,6 +3,7 @@ import {
 	stateAt,
 	sunPosition,
 	type Eye,
+	type SeenArc,
 	type Site,
 	type SiteState,
 	type SunPosition
@@ -24,7 +25,7 @@ import {
 	type PartKind,
 	type PartRef
 } from './parts';
-import { litParts, middleEye, spotsOf, type LitPart, type Spot } from './seen';
+import { arcsFor, litParts, middleEye, spotsOf, type LitPart, type Spot } from './seen';
 import type { Snap } from './snap';
 import type { Place } from './geometry';
 import type { View } from './view';
@@ -116,9 +117,11 @@ export class TableState {
 				: this.site.zones[this.zoneIndex]?.eyes[this.spot * zone.eyeHeights.length];
 		return chosen ?? middleEye(this.site, zone, this.zoneIndex);
 	});
-	readonly lit: LitPart[] = $derived(
-		this.site && this.eye ? litParts(this.site, this.eye, this.sun) : []
+	/** The bow that this eye sees, asked of the engine once a frame. */
+	readonly arcs: SeenArc[] = $derived(
+		this.site && this.eye ? arcsFor(this.site, this.eye, this.sun) : []
 	);
+	readonly lit: LitPart[] = $derived(litParts(this.arcs));
 
 	constructor(plan: Plan, { date, readonly }: { date: LocalDate; readonly: boolean }) {
 		this.#history = startHistory(plan);

@@ -1,8 +1,15 @@
-import { createSite, stateAt, sunPosition } from '../../../src/lib/optics';
+import {
+	createSite,
+	stateAt,
+	sunPosition,
+	type Site,
+	type SunPosition
+} from '../../../src/lib/optics';
 import { draggedPlan } from '../../../src/lib/plan-table/drag';
+import { faceArcs } from '../../../src/lib/plan-table/face';
 import { shadowOf } from '../../../src/lib/plan-table/geometry';
 import { tableDay } from '../../../src/lib/plan-table/moment';
-import { bandOf, litParts, middleEye, spotsOf } from '../../../src/lib/plan-table/seen';
+import { arcsFor, bandOf, litParts, middleEye, spotsOf } from '../../../src/lib/plan-table/seen';
 import type { Plan } from '../../../src/lib/schemas/plan';
 import { fourByFour, quarryTerrace } from '../../support/plans';
 import { medianTimesMs, type Measure, type Section } from '../measure';
@@ -11,6 +18,13 @@ import { medianTimesMs, type Measure, type Section } from '../measure';
 const FRAME_MS = 1000 / 50;
 const FRAMES = 200;
 const START_MS = Date.UTC(2027, 2, 18, 8);
+
+/** The bow on the curtains, from above and upright. */
+function drawn(site: Site, plan: Plan, sun: SunPosition): number {
+	const eye = middleEye(site, plan.zones[0]!, 0)!;
+	const arcs = arcsFor(site, eye, sun);
+	return litParts(arcs).length + faceArcs(arcs, eye).length;
+}
 
 /** What a moment costs beside drawing it: state, spots, shadows, and the bow on the curtains. */
 function momentFrames(plan: Plan): number {
@@ -24,7 +38,7 @@ function momentFrames(plan: Plan): number {
 			sum += spotsOf(zone, plan.zones[i]!.eyeHeights.length).length;
 		}
 		for (const wall of plan.walls ?? []) sum += shadowOf(wall, sun)?.length ?? 0;
-		sum += litParts(site, middleEye(site, plan.zones[0]!, 0)!, sun).length;
+		sum += drawn(site, plan, sun);
 	}
 	return sum;
 }
@@ -40,7 +54,7 @@ function dragFrames(plan: Plan): number {
 		const site = createSite(dragged);
 		const state = stateAt(site, START_MS);
 		sum += state.zones[0]!.share;
-		sum += litParts(site, middleEye(site, dragged.zones[0]!, 0)!, state.sun).length;
+		sum += drawn(site, dragged, state.sun);
 	}
 	return sum;
 }

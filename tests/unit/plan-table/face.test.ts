@@ -1,6 +1,7 @@
 import { expect, test } from 'vitest';
 import { createSite } from '../../../src/lib/optics';
 import { besideLine, faceArcs, firstEndIsLeft } from '../../../src/lib/plan-table/face';
+import { arcsFor } from '../../../src/lib/plan-table/seen';
 import { barePlan } from '../../support/plans';
 
 const site = createSite(
@@ -15,7 +16,7 @@ const eye = { x: 0, y: 0, z: 1.6 };
 const sun = { azimuthDeg: 180, altitudeDeg: 20 };
 
 test('the bow stands on the curtain’s face, alike on both sides of the middle, highest there', () => {
-	const [arc] = faceArcs(site, eye, sun);
+	const [arc] = faceArcs(arcsFor(site, eye, sun), eye);
 	const { line } = arc!;
 	const [left, right] = [line[0]!, line.at(-1)!];
 	expect(left[0] + right[0]).toBeCloseTo(40, 6);
@@ -24,7 +25,7 @@ test('the bow stands on the curtain’s face, alike on both sides of the middle,
 	expect(top[0]).toBeCloseTo(20, 0);
 	// The top of the ring is the radius less the sun's altitude above the eye: 12 m tan(41.3 - 20).
 	expect(top[1]).toBeCloseTo(1.6 + 12 * Math.tan((21.3 * Math.PI) / 180), 1);
-	expect(faceArcs(site, eye, { ...sun, altitudeDeg: -2 })).toEqual([]);
+	expect(arcsFor(site, eye, { ...sun, altitudeDeg: -2 })).toEqual([]);
 });
 
 test('left of a line that runs east is north', () => {

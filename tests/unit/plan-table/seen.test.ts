@@ -1,6 +1,7 @@
 import { expect, test } from 'vitest';
 import { createSite, stateAt } from '../../../src/lib/optics';
 import {
+	arcsFor,
 	bandOf,
 	litParts,
 	medianArcDeg,
@@ -29,7 +30,7 @@ test('the middle of a window is open, with the engine’s arcs at the spots', ()
 	);
 	expect(whyWords(site, state, state.zones[0]!)).toMatch(/^Open: \d+ % of the eyes/);
 	expect(medianArcDeg(state.zones[0]!, site.minimumArcDeg)).toBeGreaterThanOrEqual(45);
-	const lit = litParts(site, middleEye(site, plan.zones[0]!, 0)!, state.sun);
+	const lit = litParts(arcsFor(site, middleEye(site, plan.zones[0]!, 0)!, state.sun));
 	expect(lit.length).toBeGreaterThan(0);
 	for (const { curtainIndex, startM, endM } of lit) {
 		expect(startM).toBeGreaterThanOrEqual(-1e-6);
@@ -40,7 +41,7 @@ test('the middle of a window is open, with the engine’s arcs at the spots', ()
 test('at night nothing is lit and the reason is said', () => {
 	const state = stateAt(site, day.startMs);
 	expect(whyWords(site, state, state.zones[0]!)).toMatch(/the sun is down/);
-	expect(litParts(site, site.zones[0]!.eyes[0]!, state.sun)).toEqual([]);
+	expect(arcsFor(site, site.zones[0]!.eyes[0]!, state.sun)).toEqual([]);
 });
 
 test('times of day are the wall clock’s, on days of 23 and 25 hours too', () => {
