@@ -17,7 +17,12 @@ export const sheetFields = [
 	'bottom',
 	'top'
 ] as const;
-export const curtainFields = [...sheetFields, 'dropDiameter', 'waterTemperature'] as const;
+export const curtainFields = [
+	...sheetFields,
+	'dropDiameter',
+	'waterTemperature',
+	'waterFlow'
+] as const;
 export const zoneFields = ['name', 'outline', 'floor', 'eyeHeights'] as const;
 
 /** Lists of a plan that are tables, with the text fields of a row. */
@@ -97,6 +102,7 @@ export function planFromFields(
 				...sheet(value, text('name')),
 				dropDiameter: value('dropDiameter'),
 				...(text('waterTemperature') ? { waterTemperature: value('waterTemperature') } : {}),
+				...(text('waterFlow') ? { waterFlow: value('waterFlow') } : {}),
 				enabled: fields[`curtains[${row}].enabled`] !== undefined
 			};
 		}),
@@ -157,6 +163,7 @@ export function fieldsFromPlan(plan: Plan): PlanFields {
 		setSheet(`curtains[${i}]`, curtain);
 		set(`curtains[${i}].dropDiameter`, curtain.dropDiameter);
 		set(`curtains[${i}].waterTemperature`, curtain.waterTemperature);
+		set(`curtains[${i}].waterFlow`, curtain.waterFlow);
 		if (curtain.enabled ?? true) set(`curtains[${i}].enabled`, 'on');
 	});
 	(plan.walls ?? []).forEach((wall, i) => setSheet(`walls[${i}]`, wall));

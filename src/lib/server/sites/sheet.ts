@@ -1,5 +1,6 @@
 import { bowRadiusDeg } from '../../optics';
 import { formatDate, formatMinutes } from '../../format';
+import { flowWords } from '../../mist/flow';
 import { groupBy } from '../../group-by';
 import type { Plan } from '../../schemas/plan';
 import { drawPdf, paper } from '../pdf';
@@ -156,8 +157,18 @@ function drawMeasures(pdf: PDFKit.PDFDocument, plan: Plan): void {
 	heading(pdf, 'Curtains');
 	table(
 		pdf,
-		['Name', 'From x, y', 'To x, y', 'Length', 'Bearing', 'Bottom to top', 'Drops', 'Bow radius'],
-		[84, 62, 62, 48, 46, 76, 50, 55],
+		[
+			'Name',
+			'From x, y',
+			'To x, y',
+			'Length',
+			'Bearing',
+			'Bottom to top',
+			'Drops',
+			'Bow radius',
+			'Flow'
+		],
+		[80, 56, 56, 44, 42, 70, 44, 46, 45],
 		plan.curtains.map((one, i) => [
 			`${one.name ?? `Curtain ${i + 1}`}${(one.enabled ?? true) ? '' : ' (off)'}`,
 			corner(one.from),
@@ -166,9 +177,12 @@ function drawMeasures(pdf: PDFKit.PDFDocument, plan: Plan): void {
 			`${Math.round(bearingDeg(one.from, one.to))}°`,
 			`${one.bottom} to ${metres(one.top)}`,
 			`${one.dropDiameter} µm`,
-			`${bowRadiusDeg({ dropDiameterUm: one.dropDiameter, waterTemperatureC: one.waterTemperature }).toFixed(2)}°`
+			`${bowRadiusDeg({ dropDiameterUm: one.dropDiameter, waterTemperatureC: one.waterTemperature }).toFixed(2)}°`,
+			one.waterFlow === undefined ? 'not given' : `${one.waterFlow} l/min`
 		])
 	);
+	const flow = flowWords(plan);
+	if (flow) pdf.fillColor(ink).text(flow, left, pdf.y + 4, { width: right - left });
 	if (plan.walls && plan.walls.length > 0) {
 		heading(pdf, 'Walls');
 		table(
