@@ -9,6 +9,7 @@ import {
 	type TenantTx
 } from '../../../src/lib/server/db/transaction.ts';
 import { listJobs, retryJob } from '../../../src/lib/server/jobs/admin.ts';
+import { moveOrder } from '../../../src/lib/server/booking/move.ts';
 import { listLetters } from '../../../src/lib/server/mail/read.ts';
 import {
 	changeRole,
@@ -50,6 +51,12 @@ const SERVICES: [name: string, right: Right, run: (tx: TenantTx) => Promise<unkn
 		'changeOperator',
 		'operator.settings',
 		(tx) => changeOperator(tx, { name: 'Renamed', requireSecondStep: false })
+	],
+	[
+		'moveOrder',
+		'orders.move',
+		(tx) =>
+			moveOrder(tx, NOBODY, NOBODY, { moveId: NOBODY, wishedBy: 'visitor', words: '' }, new Date())
 	],
 	['readTrail', 'trail.read', (tx) => readTrail(tx, { most: 5 })],
 	['listLetters', 'letters.read', (tx) => listLetters(tx, { most: 5 })]

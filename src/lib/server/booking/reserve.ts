@@ -132,7 +132,7 @@ async function priceLines(
 }
 
 /** Holds that have lapsed give their places back at once, even when no worker runs just now. */
-async function releaseLapsedHolds(tx: TenantTx, slotId: string, now: Date): Promise<void> {
+export async function releaseLapsedHolds(tx: TenantTx, slotId: string, now: Date): Promise<void> {
 	// In the order of locks that every other writer uses: the orders, then their slot.
 	const lapsed = await tx.sql
 		.select({ id: order.id })

@@ -9,4 +9,5 @@ export * from './programmes';
 export * from './weather';
 export * from './orders';
 export * from './payments';
+export * from './moves';
 export * from './invoicing';
