@@ -4,8 +4,8 @@ import type { Plan, PlanZone } from './schemas/plan';
 
 /** Something in a right plan that is hardly meant. It stops nothing. */
 export interface PlanCaution {
-	/** JSON path of the part that it is about. */
-	path: string;
+	/** JSON paths of the parts that it is about, the first foremost. */
+	paths: readonly string[];
 	message: string;
 }
 
@@ -66,7 +66,8 @@ function zonesWithoutBow(site: Site, year: number): Set<number> {
  */
 export function planCautions(plan: Plan, year: number): PlanCaution[] {
 	const cautions: PlanCaution[] = [];
-	const tell = (path: string, message: string) => cautions.push({ path, message });
+	const tell = (path: string, message: string, ...others: string[]) =>
+		cautions.push({ paths: [path, ...others], message });
 	const zoneName = (i: number) => plan.zones[i]!.name ?? `Zone ${i + 1}`;
 	const sheets = [
 		...plan.curtains.map((one, i) => ({ one, path: `curtains[${i}]`, kind: 'Curtain', i })),
@@ -91,10 +92,14 @@ export function planCautions(plan: Plan, year: number): PlanCaution[] {
 			const cm2 = Math.round(areaM2 * 10_000);
 			tell(path, `${zoneName(i)} has ${cm2} cm² to stand on. Are these metres?`);
 		}
-		for (const { one, name, kind } of sheets) {
+		for (const { one, path: sheetPath, name, kind } of sheets) {
 			if (kind !== 'Curtain' || one.bottom >= headM(zone)) continue;
 			if (goesThrough(zone.outline, one.from, one.to)) {
-				tell(path, `${name} hangs through ${zoneName(i)}: people would stand in the mist.`);
+				tell(
+					path,
+					`${name} hangs through ${zoneName(i)}: people would stand in the mist.`,
+					sheetPath
+				);
 			}
 		}
 	}

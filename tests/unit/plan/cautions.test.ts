@@ -6,7 +6,9 @@ import type { Plan } from '$lib/schemas/plan';
 const [west, north] = quarryPlan.curtains as [Plan['curtains'][0], Plan['curtains'][0]];
 const [terrace] = quarryPlan.zones as [Plan['zones'][0]];
 const told = (plan: Partial<Plan>) =>
-	planCautions({ ...quarryPlan, ...plan }, 2027).map(({ path, message }) => `${path}: ${message}`);
+	planCautions({ ...quarryPlan, ...plan }, 2027).map(
+		({ paths, message }) => `${paths[0]}: ${message}`
+	);
 
 test('a plan as it should be has none', () => expect(told({})).toEqual([]));
 
