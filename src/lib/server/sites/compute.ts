@@ -19,7 +19,7 @@ const origin = { actor: { kind: 'worker', name: 'windows' } } as const;
 export type Computation = typeof computation.$inferSelect;
 
 /** Object keys in order, so that a plan stored and read back gives the same text. */
-function canonical(value: unknown): string {
+export function canonical(value: unknown): string {
 	return JSON.stringify(value, (_, inner: unknown) =>
 		inner && typeof inner === 'object' && !Array.isArray(inner)
 			? Object.fromEntries(Object.entries(inner).sort(([a], [b]) => (a < b ? -1 : 1)))

@@ -3,7 +3,7 @@ import { localClock } from '$lib/schedule';
 import { fieldsFromPlan, planFromFields, type PlanFields } from '$lib/schemas/plan-form';
 import { Refusal } from '$lib/server/failures';
 import { inDesk, orError } from '$lib/server/http';
-import { addPlan, demandPlan, makeLive, savePlan } from '$lib/server/sites/plans';
+import { addPlan, demandPlan, savePlan } from '$lib/server/sites/plans';
 import { demandSite } from '$lib/server/sites/sites';
 import type { TenantTx } from '$lib/server/db/transaction';
 import type { Actions, PageServerLoad, RequestEvent } from './$types';
@@ -91,14 +91,5 @@ export const actions: Actions = {
 		const done = await withPlan(event, (tx, { plan }) => addPlan(tx, event.params.site, plan));
 		if (!('version' in done)) return done;
 		redirect(303, `${pathOf(event, done.version)}?saved`);
-	},
-	live: async (event) => {
-		try {
-			await inDesk(event, (tx) => makeLive(tx, event.params.site, Number(event.params.version)));
-		} catch (thrown) {
-			if (!(thrown instanceof Refusal)) throw thrown;
-			return fail(thrown.status, { faults: [], fields: null, refused: thrown.message });
-		}
-		redirect(303, `/desk/${event.params.operator}/sites/${event.params.site}/windows`);
 	}
 };
