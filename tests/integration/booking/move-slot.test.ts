@@ -1,4 +1,4 @@
-import { eq } from 'drizzle-orm';
+import { and, eq, inArray } from 'drizzle-orm';
 import { afterAll, beforeAll, beforeEach, expect, test } from 'vitest';
 import { sendSignal } from '../../../docker-free-dev/lib/processes.ts';
 import {
@@ -225,7 +225,15 @@ test('two slots moved to one another’s places at once, with buyers, end sound'
 		if (one.status === 'rejected') expect(one.reason).toMatchObject({ kind: 'conflict' });
 	}
 	const waiting = await shop.asOwner((tx) =>
-		tx.sql.query.slotMoveOrder.findMany({ where: eq(slotMoveOrder.state, 'waiting') })
+		tx.sql.query.slotMoveOrder.findMany({
+			where: and(
+				eq(slotMoveOrder.state, 'waiting'),
+				inArray(
+					slotMoveOrder.slotMoveId,
+					done.slice(0, 2).flatMap((one) => (one.status === 'fulfilled' ? [one.value] : []))
+				)
+			)
+		})
 	);
 	const places = await shop.asOwner((tx) => placesComing(tx, [b.id, c.id]));
 	const told = [...places.values()].reduce((sum, one) => sum + one, 0);
