@@ -139,7 +139,12 @@ function readSlots(tx: TenantTx, slotIds: string[]) {
 }
 
 /** The slot to go to. @throws Refusal when it takes nobody from the other one */
-function takesMoves(slots: (typeof slot.$inferSelect)[], from: string, to: string, now: Date) {
+export function takesMoves(
+	slots: (typeof slot.$inferSelect)[],
+	from: string,
+	to: string,
+	now: Date
+) {
 	const source = slots.find(({ id }) => id === from);
 	const target = slots.find(({ id }) => id === to);
 	if (!source || !target || source.siteId !== target.siteId) {

@@ -145,7 +145,7 @@ export async function releaseLapsedHolds(tx: TenantTx, slotId: string, now: Date
 				lt(order.holdUntil, now)
 			)
 		)
-		.for('update', { skipLocked: true });
+		.for('no key update', { skipLocked: true });
 	if (lapsed.length === 0) return;
 	await tx.sql
 		.update(order)

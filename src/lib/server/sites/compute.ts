@@ -233,19 +233,6 @@ export async function findComputation(
 	return found ?? null;
 }
 
-/** The newest finished computation of a plan version, of the longest range; null when there is none. */
-export async function newestComputation(tx: TenantTx, planId: string): Promise<Computation | null> {
-	const found = await tx.sql.query.computation.findFirst({
-		where: and(
-			eq(computation.operatorId, tx.operatorId),
-			eq(computation.planId, planId),
-			eq(computation.state, 'done')
-		),
-		orderBy: [desc(computation.daysTotal), desc(computation.createdAt)]
-	});
-	return found ?? null;
-}
-
 export interface StoredWindow {
 	id: string;
 	zoneId: string;

@@ -193,9 +193,21 @@ export async function mergePlan(
 	return { ...merge, theirs: found.body, revision: found.revision };
 }
 
+/** Why a plan can not go live at its site, in words; null when it can. */
+export function liveObstacle(at: Site, body: Plan): string | null {
+	if (body.zones.length === 0) return 'The plan has no zone to stand in.';
+	if (!body.curtains.some((curtain) => curtain.enabled ?? true)) {
+		return 'The plan has no curtain that is switched on.';
+	}
+	const moved = [at.latitudeDeg, at.longitudeDeg, at.elevationM, at.timeZone].some(
+		(value, i) => value !== [body.latitude, body.longitude, body.elevation, body.timeZone][i]
+	);
+	return moved ? 'The site’s place was changed since. Save the plan again first.' : null;
+}
+
 /**
- * Makes a version the live one; the one before is retired. Slots stay as they are: those that no
- * longer lie in a window are shown when the programme is published again.
+ * Makes a version the live one; the one before is retired. Slots stay as they are: sold ones that no
+ * longer lie in a window are listed as conflicts until a person decides about each.
  */
 export async function makeLive(tx: TenantTx, slug: string, version: number): Promise<void> {
 	demand(tx, 'sites.write');
@@ -204,16 +216,8 @@ export async function makeLive(tx: TenantTx, slug: string, version: number): Pro
 	const found = await demandPlan(tx, at.id, version);
 	if (found.state === 'live') return;
 	const { body } = found;
-	if (body.zones.length === 0) throw new Refusal('conflict', 'The plan has no zone to stand in.');
-	if (!body.curtains.some((curtain) => curtain.enabled ?? true)) {
-		throw new Refusal('conflict', 'The plan has no curtain that is switched on.');
-	}
-	const moved = [at.latitudeDeg, at.longitudeDeg, at.elevationM, at.timeZone].some(
-		(value, i) => value !== [body.latitude, body.longitude, body.elevation, body.timeZone][i]
-	);
-	if (moved) {
-		throw new Refusal('conflict', 'The site’s place was changed since. Save the plan again first.');
-	}
+	const obstacle = liveObstacle(at, body);
+	if (obstacle) throw new Refusal('conflict', obstacle);
 	await tx.sql
 		.update(plan)
 		.set({ state: 'retired' })

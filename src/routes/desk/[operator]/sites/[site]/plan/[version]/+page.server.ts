@@ -5,7 +5,7 @@ import { clashWords, type Clash } from '$lib/plan-merge/merge';
 import { readPlan, type Plan, type PlanFault } from '$lib/schemas/plan';
 import { Refusal } from '$lib/server/failures';
 import { inDesk, orError } from '$lib/server/http';
-import { addPlan, demandPlan, makeLive, mergePlan, savePlan } from '$lib/server/sites/plans';
+import { addPlan, demandPlan, mergePlan, savePlan } from '$lib/server/sites/plans';
 import { demandSite } from '$lib/server/sites/sites';
 import type { TenantTx } from '$lib/server/db/transaction';
 import type { Actions, PageServerLoad, RequestEvent } from './$types';
@@ -139,15 +139,6 @@ export const actions: Actions = {
 		const answer = await withPlan(event, (tx, { plan }) => addPlan(tx, event.params.site, plan));
 		if (answer.failed) return answer.failed;
 		redirect(303, `${pathOf(event, answer.done)}?saved`);
-	},
-	live: async (event) => {
-		try {
-			await inDesk(event, (tx) => makeLive(tx, event.params.site, Number(event.params.version)));
-		} catch (thrown) {
-			if (!(thrown instanceof Refusal)) throw thrown;
-			return fail(thrown.status, { fields: null, refused: thrown.message });
-		}
-		redirect(303, `/desk/${event.params.operator}/sites/${event.params.site}/windows`);
 	}
 };
 
