@@ -1,8 +1,9 @@
 import { and, desc, eq, max } from 'drizzle-orm';
+import { mergePlans, type Merge } from '../../plan-merge/merge';
 import { readPlan, type Plan } from '../../schemas/plan';
 import { addToTrail } from '../audit/trail';
 import { demand } from '../auth/rights';
-import { plan, site, zone } from '../db/schema';
+import { plan, site, trail, zone } from '../db/schema';
 import type { TenantTx } from '../db/transaction';
 import { Refusal } from '../failures';
 import { demandSite, type Site } from './sites';
@@ -146,7 +147,7 @@ export async function savePlan(
 	if (saved.length === 0) {
 		throw new Refusal(
 			'conflict',
-			'Somebody else has saved this version since you opened it. Save yours as a new version, or open theirs.'
+			`${await lastEditor(tx, found.id)} has saved this version since you opened it. Bring the two together, or save yours as a new version.`
 		);
 	}
 	await addToTrail(tx, {
@@ -155,6 +156,41 @@ export async function savePlan(
 		before: { revision },
 		after: { revision: revision + 1 }
 	});
+}
+
+/** Who saved a version last, by the name in the trail. */
+async function lastEditor(tx: TenantTx, planId: string): Promise<string> {
+	const last = await tx.sql.query.trail.findFirst({
+		columns: { actorName: true },
+		where: and(
+			eq(trail.operatorId, tx.operatorId),
+			eq(trail.action, 'plan.saved'),
+			eq(trail.subjectId, planId)
+		),
+		orderBy: desc(trail.id)
+	});
+	return last?.actorName ?? 'Somebody else';
+}
+
+/**
+ * Brings what an editor made together with what was saved meanwhile. Nothing is saved: the editor looks
+ * at the outcome first.
+ * @param base what the editor began from, as the editor has it
+ * @returns the merged plan, with what was saved and its revision, from which the editor now goes on
+ * @throws Refusal when the version was live and does not change
+ */
+export async function mergePlan(
+	tx: TenantTx,
+	{ slug, version, base, mine }: { slug: string; version: number; base: Plan; mine: Plan }
+): Promise<Merge & { theirs: Plan; revision: number }> {
+	demand(tx, 'sites.write');
+	const at = await demandSite(tx, slug);
+	const found = await demandPlan(tx, at.id, version);
+	if (found.liveSince) {
+		throw new Refusal('conflict', 'A version that was live does not change. Copy it to a new one.');
+	}
+	const merge = mergePlans({ base, mine: withPlace(mine, at), theirs: found.body });
+	return { ...merge, theirs: found.body, revision: found.revision };
 }
 
 /** Why a plan can not go live at its site, in words; null when it can. */

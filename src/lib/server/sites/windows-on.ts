@@ -2,7 +2,8 @@ import { createHash } from 'node:crypto';
 import { createSite, stateAt, windowsInPieces, type BowWindow, type Site } from '../../optics';
 import { addDays, localDayRange, type LocalDate } from '../../schedule';
 import type { Plan } from '../../schemas/plan';
-import { canonical, engineVersion } from './compute';
+import { canonicalJson } from '../../canonical';
+import { engineVersion } from './compute';
 
 /** Windows of the zones of a plan on the dates that were asked for. */
 export interface WindowsOn {
@@ -23,7 +24,7 @@ const mostPlans = 6;
 
 function knownOf(body: Plan): Known {
 	const key = createHash('sha256')
-		.update(canonical({ engineVersion, plan: body }))
+		.update(canonicalJson({ engineVersion, plan: body }))
 		.digest('hex');
 	const found = known.get(key) ?? { site: createSite(body), byDate: new Map() };
 	known.delete(key);

@@ -63,10 +63,16 @@ function planFaults(text: string) {
 		return { faults: ['The file is not JSON.'] };
 	}
 	const read = readPlan(input);
-	return read.ok
-		? { plan: read.plan }
-		: { faults: read.faults.map(({ path, message }) => `${path}: ${message}`) };
+	if (read.ok) return { plan: read.plan };
+	const told = read.faults
+		.slice(0, mostFaultsTold)
+		.map(({ path, message }) => `${path}: ${message}`);
+	const rest = read.faults.length - told.length;
+	return { faults: rest > 0 ? [...told, `And ${rest} more of the kind.`] : told };
 }
+
+/** A list of thousands of rows may be wrong in every one. */
+const mostFaultsTold = 20;
 
 const mostPlanBytes = 1024 * 1024;
 
