@@ -23,6 +23,8 @@ export interface Conflict {
 	minutes: number;
 	/** The window of its zone around that day that fits best; null when there is none. */
 	nearest: { startsAt: Date; endsAt: Date } | null;
+	/** The windows of its zone that reach into that day, for drawing. */
+	dayWindows: { startsAt: Date; endsAt: Date; peakArcDeg: number }[];
 	/** Coming slots that lie in a window of the version and have room for everybody. */
 	targets: TargetSlot[];
 	/** What the last move away from it could not take along. */

@@ -55,8 +55,7 @@ export async function moveOrder(
 		wishedBy: wish.wishedBy,
 		words: wish.words,
 		slotMoveId: wish.slotMove?.id ?? null,
-		movedByName: wish.slotMove?.decidedByName ?? tx.actor.name,
-		createdAt: now
+		movedByName: wish.slotMove?.decidedByName ?? tx.actor.name
 	});
 	const there = { ...found, slotId: target.id };
 	await issueTickets(tx, there);

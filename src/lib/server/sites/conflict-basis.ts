@@ -27,6 +27,13 @@ export interface Basis {
 	placesComing: Map<string, number>;
 }
 
+/** Which version of which site is asked about. */
+export interface Asked {
+	slug: string;
+	version: number | null;
+	counted?: boolean;
+}
+
 export type SlotAt = Awaited<ReturnType<typeof comingSlots>>[number];
 
 function comingSlots(tx: TenantTx, siteId: string, now: Date, ...more: SQL[]) {
@@ -62,11 +69,12 @@ function comingSlots(tx: TenantTx, siteId: string, now: Date, ...more: SQL[]) {
 /**
  * Reads what the conflicts of a plan version follow from.
  * @param version null: the live one
+ * @param counted only: what is in the slots, and where they could go, is left out
  * @returns null when no version is live
  */
 export async function readBasis(
 	tx: TenantTx,
-	{ slug, version }: { slug: string; version: number | null },
+	{ slug, version, counted = false }: Asked,
 	now: Date
 ): Promise<Basis | null> {
 	demand(tx, 'conflicts.decide');
@@ -81,16 +89,16 @@ export async function readBasis(
 		sql`${slot.sold} + ${slot.held} > 0`,
 		ne(bowWindow.planId, plan.id)
 	);
-	const candidates = await candidatesNear(tx, site.id, doubtful, now);
+	const candidates = counted ? [] : await candidatesNear(tx, site.id, doubtful, now);
 	const ids = doubtful.map(({ id }) => id);
-	const moves = await listSlotMoves(tx, site.id, 200);
+	const moves = counted ? [] : await listSlotMoves(tx, site.id, 200);
 	const newestFirst = [...moves].reverse();
 	return {
 		site,
 		plan,
 		doubtful,
 		candidates,
-		sums: await sumsOf(tx, ids),
+		sums: counted ? new Map() : await sumsOf(tx, ids),
 		kept: await keptOf(tx, plan.id),
 		moving: await movesUnderWay(tx, ids),
 		failedMoves: new Map(

@@ -1,9 +1,10 @@
 import { createHash } from 'node:crypto';
 import type { Conflict } from '../../conflict-deeds';
+import { dayBand } from '../../day-band';
 import { coverOf } from '../../schedule';
 import type { TargetSlot } from '../../slot-words';
 import { inTenant, type Origin } from '../db/transaction';
-import { readBasis, windowsFor, type Basis, type SlotAt } from './conflict-basis';
+import { readBasis, windowsFor, type Asked, type Basis, type SlotAt } from './conflict-basis';
 import type { PlanVersion } from './plans';
 import type { Site } from './sites';
 import type { WindowsOn } from './windows-on';
@@ -83,6 +84,13 @@ function conflictOf(
 		coveredMinutes: cover.coveredMs / 60_000,
 		minutes: (at.endsAt.getTime() - at.startsAt.getTime()) / 60_000,
 		nearest: nearest && { startsAt: new Date(nearest.startMs), endsAt: new Date(nearest.endMs) },
+		dayWindows: (windows.of(at.zone, at.localDate) ?? []).map(
+			({ startMs: from, endMs: to, peakArcDeg }) => ({
+				startsAt: new Date(from),
+				endsAt: new Date(to),
+				peakArcDeg
+			})
+		),
 		targets: targetsOf(at, basis, good),
 		failedMoveId: basis.failedMoves.get(at.id) ?? null
 	};
@@ -134,15 +142,22 @@ function digestOf({ plan, undecided, kept }: Look): string {
  */
 export async function lookAtConflicts(
 	{ operatorId, origin }: Asker,
-	asked: { slug: string; version: number | null },
+	asked: Asked,
 	now: Date
 ): Promise<Look | null> {
 	const basis = await inTenant(operatorId, origin, (tx) => readBasis(tx, asked, now));
 	return basis && compare(basis, await windowsFor(basis));
 }
 
+/** A conflict with the band of its day: the version's windows, and the slot beside them. */
+export function withBand(site: Site, conflict: Conflict) {
+	const slot = { ...conflict, status: 'open', capacity: conflict.sold + conflict.held };
+	const { localDate: date, dayWindows: windows } = conflict;
+	return { ...conflict, band: dayBand({ site, date, windows, slots: [slot] }) };
+}
+
 /** How many sold slots of a site await a decision. @throws Refusal */
 export async function countUndecided(asker: Asker, slug: string, now: Date): Promise<number> {
-	const look = await lookAtConflicts(asker, { slug, version: null }, now);
+	const look = await lookAtConflicts(asker, { slug, version: null, counted: true }, now);
 	return look?.undecided.length ?? 0;
 }

@@ -8,7 +8,7 @@ import { keptSlot, site } from '../db/schema';
 import { inTenant, type TenantTx } from '../db/transaction';
 import { Refusal } from '../failures';
 import { callOff } from '../weather/call-off';
-import { readBasis, windowsFor } from './conflict-basis';
+import { readBasis, windowsFor, type Asked } from './conflict-basis';
 import { compare, type Asker, type Look } from './conflicts';
 import { makeLive } from './plans';
 
@@ -88,7 +88,7 @@ export async function goLive(
 
 async function act(
 	{ operatorId, origin }: Asker,
-	asked: { slug: string; version: number | null },
+	asked: Asked,
 	decisions: Decisions,
 	now: Date,
 	first: (tx: TenantTx, look: Look) => Promise<void>
@@ -104,7 +104,7 @@ async function act(
 			.select({ id: site.id })
 			.from(site)
 			.where(and(eq(site.operatorId, operatorId), eq(site.id, before.site.id)))
-			.for('update');
+			.for('no key update');
 		const basis = await readBasis(tx, asked, now);
 		if (basis?.plan.id !== before.plan.id || basis.plan.revision !== before.plan.revision) {
 			throw changed();

@@ -97,7 +97,7 @@ export async function addPlan(tx: TenantTx, slug: string, body: Plan | null): Pr
 	demand(tx, 'sites.write');
 	const at = await demandSite(tx, slug);
 	// One at a time: the site's row is the lock for the next number.
-	await tx.sql.select({ id: site.id }).from(site).where(eq(site.id, at.id)).for('update');
+	await tx.sql.select({ id: site.id }).from(site).where(eq(site.id, at.id)).for('no key update');
 	const [last] = await tx.sql
 		.select({ version: max(plan.version) })
 		.from(plan)
@@ -212,7 +212,7 @@ export function liveObstacle(at: Site, body: Plan): string | null {
 export async function makeLive(tx: TenantTx, slug: string, version: number): Promise<void> {
 	demand(tx, 'sites.write');
 	const at = await demandSite(tx, slug);
-	await tx.sql.select({ id: site.id }).from(site).where(eq(site.id, at.id)).for('update');
+	await tx.sql.select({ id: site.id }).from(site).where(eq(site.id, at.id)).for('no key update');
 	const found = await demandPlan(tx, at.id, version);
 	if (found.state === 'live') return;
 	const { body } = found;

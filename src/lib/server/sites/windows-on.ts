@@ -1,6 +1,6 @@
 import { createHash } from 'node:crypto';
-import { createSite, stateAt, windowsInPieces, type Site } from '../../optics';
-import { addDays, localDayRange, type Interval, type LocalDate } from '../../schedule';
+import { createSite, stateAt, windowsInPieces, type BowWindow, type Site } from '../../optics';
+import { addDays, localDayRange, type LocalDate } from '../../schedule';
 import type { Plan } from '../../schemas/plan';
 import { canonicalJson } from '../../canonical';
 import { engineVersion } from './compute';
@@ -8,14 +8,14 @@ import { engineVersion } from './compute';
 /** Windows of the zones of a plan on the dates that were asked for. */
 export interface WindowsOn {
 	/** Windows of a zone that a slot of a local date can lie in; null when that date was not asked for. */
-	of(zone: string, date: LocalDate): readonly Interval[] | null;
+	of(zone: string, date: LocalDate): readonly BowWindow[] | null;
 	hasZone(zone: string): boolean;
 }
 
 interface Known {
 	site: Site;
 	/** Windows by the local date on which they start, then by zone. */
-	byDate: Map<LocalDate, Map<string, readonly Interval[]>>;
+	byDate: Map<LocalDate, Map<string, readonly BowWindow[]>>;
 }
 
 /** What was computed last, newest last: a page and its answer ask for the same. */
@@ -60,7 +60,7 @@ export async function windowsOn(body: Plan, dates: readonly LocalDate[]): Promis
 		of(zone, date) {
 			const first = firsts.get(date);
 			if (first === undefined) return null;
-			const found: Interval[] = [];
+			const found: BowWindow[] = [];
 			for (let at = first; at <= date; at = addDays(at, 1)) {
 				found.push(...(byDate.get(at)?.get(zone) ?? []));
 			}

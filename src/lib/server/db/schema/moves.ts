@@ -97,7 +97,10 @@ export const orderMove = pgTable(
 		/** The decision on the whole slot that it was part of. */
 		slotMoveId: uuid('slot_move_id'),
 		movedByName: text('moved_by_name').notNull(),
-		createdAt: createdAt()
+		/** When it was written, under the order's lock: moves of an order follow one another by it. */
+		createdAt: instant('created_at')
+			.notNull()
+			.default(sql`clock_timestamp()`)
 	},
 	(t) => [
 		unique('order_move_operator_id_id_key').on(t.operatorId, t.id),

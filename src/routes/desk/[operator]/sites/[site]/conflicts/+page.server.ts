@@ -2,7 +2,7 @@ import { redirect } from '@sveltejs/kit';
 import { decideSchema, mostDecisions } from '$lib/schemas/decide';
 import { listSlotMoves } from '$lib/server/booking/move-slot';
 import { deskOrigin, emptyForm, handleForm, inDesk, orError } from '$lib/server/http';
-import { lookAtConflicts } from '$lib/server/sites/conflicts';
+import { lookAtConflicts, withBand } from '$lib/server/sites/conflicts';
 import { chosenFrom, decideConflicts } from '$lib/server/sites/decide';
 import { demandSite } from '$lib/server/sites/sites';
 import type { Actions, PageServerLoad } from './$types';
@@ -28,7 +28,7 @@ export const load: PageServerLoad = async (event) => {
 			timeZone: site.timeZone
 		},
 		version: look?.plan.version ?? null,
-		conflicts: conflicts.slice(0, mostDecisions),
+		conflicts: conflicts.slice(0, mostDecisions).map((one) => withBand(site, one)),
 		left: Math.max(0, conflicts.length - mostDecisions),
 		kept: (look?.kept ?? []).filter(({ conflict }) => conflict.slotId !== again),
 		moves,

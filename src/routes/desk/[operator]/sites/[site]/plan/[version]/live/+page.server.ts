@@ -2,7 +2,7 @@ import { redirect } from '@sveltejs/kit';
 import { decideSchema, mostDecisions } from '$lib/schemas/decide';
 import { deskOrigin, emptyForm, handleForm, inDesk, orError } from '$lib/server/http';
 import { countComing } from '$lib/server/sites/conflict-basis';
-import { lookAtConflicts } from '$lib/server/sites/conflicts';
+import { lookAtConflicts, withBand } from '$lib/server/sites/conflicts';
 import { chosenFrom, goLive } from '$lib/server/sites/decide';
 import { liveObstacle } from '$lib/server/sites/plans';
 import type { Actions, PageServerLoad } from './$types';
@@ -27,7 +27,7 @@ export const load: PageServerLoad = async (event) => {
 		state: plan.state,
 		obstacle: liveObstacle(site, plan.body),
 		coming,
-		conflicts: conflicts.slice(0, mostDecisions),
+		conflicts: conflicts.slice(0, mostDecisions).map((one) => withBand(site, one)),
 		left: Math.max(0, conflicts.length - mostDecisions),
 		digest: look.digest ?? '',
 		form: await emptyForm(decideSchema, { digest: look.digest ?? '' })
