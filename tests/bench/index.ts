@@ -1,5 +1,6 @@
 import { parseArgs } from 'node:util';
 import type { Section } from './measure';
+import { placeSearchSection } from './sections/place-search';
 import { planTableSection } from './sections/plan-table';
 import { windowsSection } from './sections/windows';
 
@@ -9,7 +10,7 @@ import { windowsSection } from './sections/windows';
  *     npm run --silent bench                          every section, as a table
  *     npm run --silent bench -- --only windows --json one section, as [{ "name", "value", "unit" }]
  */
-const sections: readonly Section[] = [windowsSection, planTableSection];
+const sections: readonly Section[] = [windowsSection, planTableSection, placeSearchSection];
 
 async function main(): Promise<number> {
 	const { values } = parseArgs({
