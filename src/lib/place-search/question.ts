@@ -1,5 +1,6 @@
 import type { Season, SlotPattern } from '../schedule';
 import type { Plan, PlanCurtain } from '../schemas/plan';
+import { withPlaced } from './placed';
 
 /** A place on the ground in the site frame: metres, [x east, y north]. */
 export type Ground = readonly [number, number];
@@ -123,13 +124,6 @@ export function planWith(
 	question: Pick<PlaceQuestion, 'plan' | 'replaces' | 'curtain'>,
 	placement: Placement
 ): Plan {
-	const { plan, replaces } = question;
-	const made = curtainAt(question, placement);
-	return {
-		...plan,
-		curtains:
-			replaces === null
-				? [...plan.curtains, made]
-				: plan.curtains.map((curtain, i) => (i === replaces ? made : curtain))
-	};
+	const curtain = curtainAt(question, placement);
+	return withPlaced(question.plan, { index: question.replaces, curtain }).plan;
 }
