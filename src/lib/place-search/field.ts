@@ -17,7 +17,7 @@ export function radicalInverse(i: number, base: number): number {
 }
 
 /** A narrow area takes few of the placements about it: no more are tried for each that is wanted. */
-const TRIES_PER_PLACEMENT = 400;
+const TRIES_PER_PLACEMENT = 100;
 
 /** Parts of the way that a curtain can slide along an edge of the area at which it is tried. */
 const SLIDES = 5;
