@@ -198,6 +198,17 @@ test('a lower curtain takes the bow from sold slots, and a person decides about 
 		await expectAccessible(visitor);
 	});
 
+	await test.step('publishing anew keeps to the decisions', async () => {
+		await planner.goto(site);
+		await planner.getByRole('link', { name: 'Mornings' }).click();
+		await planner.getByRole('button', { name: 'Compute them' }).click();
+		await expect(planner.getByText(/^Kept by|Kept by .*, \d+ \w+ \d{4}/)).toBeVisible({
+			timeout: 30_000
+		});
+		await planner.getByRole('button', { name: /^Publish/ }).click();
+		await expect(planner.getByText(/^Published: /)).toBeVisible();
+	});
+
 	await test.step('the called-off visitor is told, the kept ones hear nothing', async () => {
 		await letterTo(paidBack, /^Called off: Sluice yard/);
 		await planner.goto(home);

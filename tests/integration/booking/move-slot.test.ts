@@ -148,7 +148,7 @@ test('what can not go is named with the reason, and stays as it was', async () =
 	}
 	expect(await readSlotRow(shop, from.id)).toMatchObject({ sold: 5, status: 'paused' });
 	// It is over, and a person can decide again.
-	expect(await shop.asOwner((tx) => movesUnderWay(tx, [from.id]))).toEqual(new Map());
+	expect(await shop.asOwner((tx) => movesUnderWay(tx, { slotIds: [from.id] }))).toEqual(new Map());
 	const elsewhere = freshSlot();
 	const second = await start(from.id, elsewhere.id);
 	await runJob(second, late);

@@ -4,6 +4,10 @@ import { seenOf, type Chosen } from '../../../src/lib/conflict-deeds.ts';
 import { keptSlot, plan, slot } from '../../../src/lib/server/db/schema/index.ts';
 import { roles, type Role } from '../../../src/lib/server/db/schema/operators.ts';
 import { quarryPlan } from '../../../src/lib/server/demo/plans.ts';
+import { moveSlotOrder } from '../../../src/lib/server/booking/move-slot.ts';
+import { demandProgramme, saveProgramme } from '../../../src/lib/server/programmes/programmes.ts';
+import { previewProgramme, publishProgramme } from '../../../src/lib/server/programmes/publish.ts';
+import { askForWindows, computeWindows } from '../../../src/lib/server/sites/compute.ts';
 import { countComing } from '../../../src/lib/server/sites/conflict-basis.ts';
 import { lookAtConflicts } from '../../../src/lib/server/sites/conflicts.ts';
 import { decideConflicts, goLive } from '../../../src/lib/server/sites/decide.ts';
@@ -233,6 +237,83 @@ test('made live with no decision, the slots are untouched and listed as undecide
 	]);
 });
 
+test('once the programme is published anew, its slots are what a conflict can move to', async () => {
+	const sold = replan.outside[0]!;
+	await buy(shop, sold.id, { adults: 2 });
+	const version = await addVersion(shop, replan.body);
+	await shop.asOwner((tx) => makeLive(tx, shop.site.slug, version));
+	const { siteId, programmeId, slug } = shop.site;
+	const { programme, prices } = await shop.asOwner((tx) =>
+		demandProgramme(tx, siteId, programmeId)
+	);
+	const computationId = await shop.asOwner((tx) =>
+		askForWindows(tx, siteId, { from: programme.seasonFrom, to: programme.seasonTo })
+	);
+	await computeWindows({ operatorId: shop.operatorId, computationId }, { number: 1, of: 1 });
+	await shop.asOwner((tx) =>
+		saveProgramme(
+			tx,
+			{ slug, id: programmeId },
+			{ ...programme, slotMinutes: 15, gapMinutes: 5, gridMinutes: 5, prices: [...prices] }
+		)
+	);
+	const now = new Date();
+	const preview = await shop.asOwner((tx) => previewProgramme(tx, slug, programmeId, now));
+	expect(preview.difference!.staying).toMatchObject([
+		{ slot: { id: sold.id }, outsideWindows: true }
+	]);
+	await shop.asOwner((tx) => publishProgramme(tx, slug, programmeId, preview.digest, now));
+	const { undecided, digest } = await look(null);
+	expect(undecided.map(({ slotId }) => slotId)).toEqual([sold.id]);
+	const known = new Set(shop.slots.map(({ id }) => id));
+	const fresh = undecided[0]!.targets.filter(({ id }) => !known.has(id));
+	expect(fresh.length).toBeGreaterThan(0);
+	const done = await decide(digest, [{ slotId: sold.id, choice: `move:${fresh[0]!.id}` }]);
+	const [job] = await jobsOf('move_slot_order');
+	await moveSlotOrder({
+		operatorId: shop.operatorId,
+		slotMoveId: done.slotMoveIds[0]!,
+		orderId: job!.payload.orderId
+	});
+	expect(await readSlotRow(shop, fresh[0]!.id)).toMatchObject({ sold: 2 });
+	expect((await look(null)).undecided).toEqual([]);
+	expect((await look(null)).moving).toEqual([]);
+});
+
+test('what a move could not take along is listed again, with why', async () => {
+	const sold = replan.outside[0]!;
+	const orderId = await buy(shop, sold.id, { adults: 2 });
+	const target = replan.inside.find(({ startsAt }) => startsAt > sold.startsAt)!;
+	const version = await addVersion(shop, replan.body);
+	const { digest } = await look(version);
+	const { slotMoveIds } = await live(version, digest, [
+		{ slotId: sold.id, choice: `move:${target.id}` }
+	]);
+	const [slotMoveId] = slotMoveIds as [string];
+	await buy(shop, target.id, { adults: target.capacity - 1 });
+	await moveSlotOrder({ operatorId: shop.operatorId, slotMoveId, orderId });
+	const found = await look(null);
+	expect(found.undecided).toMatchObject([
+		{ slotId: sold.id, sold: 2, orders: 1, failedMoveId: slotMoveId }
+	]);
+	expect(found.undecided[0]!.targets.map(({ id }) => id)).not.toContain(target.id);
+	await decide(found.digest, [{ slotId: sold.id, choice: 'keep' }]);
+	expect((await look(null)).undecided).toEqual([]);
+	expect(await readSlotRow(shop, sold.id)).toMatchObject({ sold: 2, status: 'paused' });
+});
+
+test('what was kept can be decided about anew', async () => {
+	const sold = replan.outside[0]!;
+	await buy(shop, sold.id);
+	const version = await addVersion(shop, replan.body);
+	const { digest } = await look(version);
+	await live(version, digest, [{ slotId: sold.id, choice: 'keep' }]);
+	const again = await look(null);
+	await decide(again.digest, [{ slotId: sold.id, choice: 'call_off' }]);
+	expect(await readSlotRow(shop, sold.id)).toMatchObject({ status: 'called_off' });
+	expect((await look(null)).kept).toEqual([]);
+});
+
 describe('refused, with nothing done', () => {
 	let version: number;
 	let sold: Slot;
@@ -375,4 +456,31 @@ test('the same decisions sent twice at once are done once', async () => {
 	}
 	expect(await jobsOf('call_off_order')).toHaveLength(1);
 	expect(await jobsOf('move_slot_order')).toHaveLength(1);
+});
+
+test('somebody buys in the very moment: what is called off is what was told, or nothing', async () => {
+	const seen = new Set<string>();
+	for (const [i, one] of replan.outside.slice(0, 5).entries()) {
+		await buy(shop, one.id);
+		const version = await addVersion(shop, replan.body);
+		const { digest } = await look(version);
+		const chosen = [{ slotId: one.id, choice: 'call_off' }];
+		await emptyQueue();
+		const go = [() => hold(shop, one.id), () => live(version, digest, chosen)];
+		if (i % 2) go.reverse();
+		const done = await Promise.allSettled(go.map((act) => act()));
+		const decided = done[i % 2 ? 0 : 1]!;
+		const bought = done[i % 2 ? 1 : 0]!;
+		const jobs = await jobsOf('call_off_order');
+		if (decided.status === 'fulfilled') {
+			expect(jobs).toHaveLength(1);
+			expect(bought.status).toBe('rejected');
+		} else {
+			expect(decided.reason).toMatchObject({ kind: 'conflict' });
+			expect(jobs).toEqual([]);
+			expect(bought.status).toBe('fulfilled');
+		}
+		seen.add(decided.status);
+	}
+	console.log(`deciding ended ${[...seen].join(' and ')}`);
 });

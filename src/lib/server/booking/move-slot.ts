@@ -99,7 +99,7 @@ async function demandMovable(
 		throw new Refusal('conflict', 'The slot is called off: there is nothing to move.');
 	}
 	if (source.startsAt <= now) throw new Refusal('conflict', 'The slot has begun.');
-	if ((await movesUnderWay(tx, [source.id])).has(source.id)) {
+	if ((await movesUnderWay(tx, { slotIds: [source.id] })).has(source.id)) {
 		throw new Refusal('conflict', 'The slot is being moved already.');
 	}
 	const places = source.sold + source.held;
@@ -110,16 +110,20 @@ async function demandMovable(
 	}
 }
 
-/** Moves that are not done yet, by the slot that they lead away from. */
-export async function movesUnderWay(tx: TenantTx, slotIds: string[]): Promise<Map<string, string>> {
+/** Moves that are not done yet, by the slot that they lead away from: of some slots, or of a site. */
+export async function movesUnderWay(
+	tx: TenantTx,
+	of: { slotIds: string[] } | { siteId: string }
+): Promise<Map<string, string>> {
 	const rows = await tx.sql
 		.selectDistinct({ slotId: slotMove.fromSlotId, id: slotMove.id })
 		.from(slotMove)
 		.innerJoin(slotMoveOrder, eq(slotMoveOrder.slotMoveId, slotMove.id))
+		.innerJoin(slot, eq(slot.id, slotMove.fromSlotId))
 		.where(
 			and(
 				eq(slotMove.operatorId, tx.operatorId),
-				inArray(slotMove.fromSlotId, slotIds),
+				'siteId' in of ? eq(slot.siteId, of.siteId) : inArray(slot.id, of.slotIds),
 				eq(slotMoveOrder.state, 'waiting')
 			)
 		);

@@ -59,7 +59,7 @@ export async function setSlotPaused(tx: TenantTx, slotId: string, paused: boolea
 	demand(tx, 'programmes.write');
 	const status = paused ? 'paused' : 'open';
 	await lockSlots(tx, [slotId]);
-	if (!paused && (await movesUnderWay(tx, [slotId])).size > 0) {
+	if (!paused && (await movesUnderWay(tx, { slotIds: [slotId] })).size > 0) {
 		throw new Refusal(
 			'conflict',
 			'The slot is being moved: it is not for sale until that is done.'

@@ -82,6 +82,8 @@ export async function readBasis(
 	const plan =
 		version === null ? await livePlan(tx, site.id) : await demandPlan(tx, site.id, version);
 	if (!plan) return null;
+	// Before the slots: one that is emptied in between is told as being moved, never as undecided.
+	const moving = await movesUnderWay(tx, { siteId: site.id });
 	const doubtful = await comingSlots(
 		tx,
 		site.id,
@@ -100,7 +102,7 @@ export async function readBasis(
 		candidates,
 		sums: counted ? new Map() : await sumsOf(tx, ids),
 		kept: await keptOf(tx, plan.id),
-		moving: await movesUnderWay(tx, ids),
+		moving,
 		failedMoves: new Map(
 			newestFirst.filter(({ failed }) => failed > 0).map(({ fromSlotId, id }) => [fromSlotId, id])
 		),

@@ -105,6 +105,8 @@ async function act(
 			.from(site)
 			.where(and(eq(site.operatorId, operatorId), eq(site.id, before.site.id)))
 			.for('no key update');
+		// And from here on nobody buys in what is about to be moved or called off, nor where it goes.
+		await lockSlots(tx, touchedBy(decisions.chosen));
 		const basis = await readBasis(tx, asked, now);
 		if (basis?.plan.id !== before.plan.id || basis.plan.revision !== before.plan.revision) {
 			throw changed();
@@ -114,6 +116,14 @@ async function act(
 		if (seenOf(decisions.chosen) !== decisions.seen) throw new NumbersFirst();
 		await first(tx, look);
 		return apply(tx, look, decisions, now);
+	});
+}
+
+/** Slots that choices change, or fill. */
+function touchedBy(chosen: Chosen[]): string[] {
+	return chosen.flatMap(({ slotId, choice }) => {
+		const target = targetOf(choice);
+		return choice === 'keep' ? [] : target ? [slotId, target] : [slotId];
 	});
 }
 
@@ -144,11 +154,6 @@ async function apply(
 		throw new Refusal('invalid', 'Say why, in a sentence that visitors will read.', 'reason');
 	}
 	demandTargets(moves);
-	// All at once and in order, as everybody who needs several slots does.
-	await lockSlots(tx, [
-		...off.map(({ slotId }) => slotId),
-		...moves.flatMap(({ conflict, target }) => [conflict.slotId, target])
-	]);
 	await keep(tx, plan.id, stay);
 	const slotMoveIds: string[] = [];
 	for (const { conflict, target } of moves) {
