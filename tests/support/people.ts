@@ -45,8 +45,10 @@ export async function makePerson(name = 'Juno Fell'): Promise<Person> {
 	return { ...made, email: account.email, password: PASSWORD };
 }
 
-/** An operator with an owner. */
-export async function makeOperator(name = 'Test Mist Gardens'): Promise<Operator> {
+/** An operator with an owner, of a name that no other has unless one is given. */
+export async function makeOperator(
+	name = `Test Mist Gardens ${crypto.randomUUID().slice(0, 8)}`
+): Promise<Operator> {
 	const owner = await makePerson('Oda Owner');
 	const { id, slug } = await openOperator(owner, name, null);
 	return { operatorId: id, slug, owner };
