@@ -1,4 +1,5 @@
 import type { Session, User } from 'lucia';
+import type { PlacedCurtain } from '$lib/place-search/placed';
 import type { Membership } from '$lib/server/operators/operators';
 
 declare global {
@@ -7,6 +8,10 @@ declare global {
 			message: string;
 			/** Stands in the log too, so that a report can be found. */
 			requestId?: string;
+		}
+		interface PageState {
+			/** A curtain that a search found a place for, on its way to the plan table. */
+			placed?: PlacedCurtain;
 		}
 		interface Locals {
 			requestId: string;

@@ -16,7 +16,14 @@ export {
 	type ZoneState
 } from './instant';
 export { bowTopDeg, seenArcs, type CurtainPoint, type SeenArc } from './seen-arcs';
-export { findWindows, zoneWindows, type BowWindow, type ZoneWindows } from './windows';
+export {
+	findWindows,
+	zoneSpans,
+	zoneWindows,
+	type BowWindow,
+	type WindowSpan,
+	type ZoneWindows
+} from './windows';
 export { buildingAltitudeDeg, withBuilding, type SkylineCorners } from './skyline';
 export { createHorizon, type Horizon } from './horizon';
 export { daylight } from './daylight';

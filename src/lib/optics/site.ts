@@ -89,7 +89,8 @@ function createSheet(sheet: PlanWall, name: string): Sheet {
 	};
 }
 
-function createCurtain(curtain: PlanCurtain, name: string): Curtain {
+/** A curtain of a right plan, ready to be looked at. */
+export function createCurtain(curtain: PlanCurtain, name: string): Curtain {
 	const radiusDeg = bowRadiusDeg({
 		dropDiameterUm: curtain.dropDiameter,
 		waterTemperatureC: curtain.waterTemperature

@@ -30,6 +30,9 @@ export interface ZoneWindows {
 	readonly windows: readonly BowWindow[];
 }
 
+/** When a window is, without how much is seen in it. */
+export type WindowSpan = Pick<BowWindow, 'date' | 'startMs' | 'endMs'>;
+
 /** A window before its peaks are known, whole seconds since 1970. */
 interface Span {
 	readonly startS: number;
@@ -38,7 +41,8 @@ interface Span {
 
 interface Finder {
 	readonly search: OpenSearch;
-	readonly peaks: PeakFinder;
+	/** Made when peaks are first asked for. */
+	peaks: PeakFinder | null;
 }
 
 /** What has been found out of the sky over a zone serves every range of dates that is asked for. */
@@ -52,7 +56,7 @@ function finderOf(site: Site, zone: Zone): Finder {
 	}
 	let finder = ofSite.get(zone);
 	if (!finder) {
-		finder = { search: new OpenSearch(site, zone), peaks: new PeakFinder(site, zone) };
+		finder = { search: new OpenSearch(site, zone), peaks: null };
 		ofSite.set(zone, finder);
 	}
 	return finder;
@@ -103,8 +107,16 @@ function* openSpans(search: OpenSearch, startS: number, endS: number): Generator
 	yield* done;
 }
 
+interface ZoneRange {
+	site: Site;
+	zone: Zone;
+	from: LocalDate;
+	to: LocalDate;
+}
+
 /**
- * The windows of one zone on a range of local dates, one after the other.
+ * When the windows of one zone on a range of local dates are, one after the other: those of `zoneWindows`
+ * without their peaks, which cost about as much again.
  *
  * A window belongs to the local date on which it starts and is followed to its end, over midnight or
  * for weeks under a midnight sun. One that was open before the first local midnight of the range is left
@@ -113,19 +125,9 @@ function* openSpans(search: OpenSearch, startS: number, endS: number): Generator
  * @param from first local date, @param to last, both counted, at most 1100 days
  * @throws RangeError when the dates are wrong
  */
-export function* zoneWindows({
-	site,
-	zone,
-	from,
-	to
-}: {
-	site: Site;
-	zone: Zone;
-	from: LocalDate;
-	to: LocalDate;
-}): Generator<BowWindow> {
+export function* zoneSpans({ site, zone, from, to }: ZoneRange): Generator<WindowSpan> {
 	const { startMs, endMs } = localDayRange({ timeZone: site.clock.timeZone, from, to });
-	const { search, peaks } = finderOf(site, zone);
+	const { search } = finderOf(site, zone);
 	for (const { startS, endS } of openSpans(
 		search,
 		Math.ceil(startMs / 1000),
@@ -133,12 +135,20 @@ export function* zoneWindows({
 	)) {
 		const date = site.clock.dateAt(startS * 1000);
 		if (date < from || date > to) continue;
-		yield {
-			date,
-			startMs: startS * 1000,
-			endMs: endS * 1000,
-			...peaks.find(startS, endS)
-		};
+		yield { date, startMs: startS * 1000, endMs: endS * 1000 };
+	}
+}
+
+/**
+ * The windows of one zone on a range of local dates, one after the other, with their peaks.
+ * @see zoneSpans which windows these are
+ * @throws RangeError when the dates are wrong
+ */
+export function* zoneWindows(range: ZoneRange): Generator<BowWindow> {
+	const finder = finderOf(range.site, range.zone);
+	for (const span of zoneSpans(range)) {
+		finder.peaks ??= new PeakFinder(range.site, range.zone);
+		yield { ...span, ...finder.peaks.find(span.startMs / 1000, span.endMs / 1000) };
 	}
 }
 

@@ -81,13 +81,14 @@ function inside(label: Label, letters: number, { widthPx }: View): Label {
  * Places for the names of all parts such that none lies on another: the selected part's first, then
  * curtains, zones, walls. A name without a free place is left out; the part is in the list of what stands there.
  * @param taken boxes that hold other writing, pixels
+ * @param area the zones are free areas, in which other things are drawn: their names go above
  * @returns the place by the part's path
  */
 export function placeLabels(
 	view: View,
 	plan: Plan,
 	selected: PartRef | null,
-	taken: readonly Box[] = []
+	{ taken = [], area = false }: { taken?: readonly Box[]; area?: boolean } = {}
 ): Map<string, Label> {
 	const weight = ({ kind }: PartRef) => ({ curtains: 0, zones: 1, walls: 2 })[kind];
 	const parts = partsOf(plan).sort(
@@ -98,7 +99,10 @@ export function placeLabels(
 	for (const ref of parts) {
 		// Two more for the mark of a fault.
 		const letters = nameOf(plan, ref).length + 2;
-		const tried = candidates(view, plan, ref)
+		const [under, over, ...beside] = candidates(view, plan, ref);
+		const inOrder = area ? [over, under, ...beside] : [under, over, ...beside];
+		const tried = inOrder
+			.flatMap((label) => label ?? [])
 			.filter(({ x, y }) => Number.isFinite(x) && Number.isFinite(y))
 			.map((label) => inside(label, letters, view));
 		const free = tried.find((label) => !boxes.some((box) => touch(box, boxOf(label, letters))));

@@ -28,7 +28,7 @@ import {
 import { arcsFor, litParts, middleEye, spotsOf, type LitPart, type Spot } from './seen';
 import type { Snap } from './snap';
 import type { Place } from './geometry';
-import type { View } from './view';
+import { fitted, type View } from './view';
 
 /** A plan as the table works with it: with the site when it is right, else with its faults. */
 function worked(plan: Plan): { site: Site | null; faults: PlanFault[] } {
@@ -128,6 +128,11 @@ export class TableState {
 		this.#saved = plan;
 		this.date = date;
 		this.readonly = readonly;
+	}
+
+	/** The view that shows everything. */
+	fit(widthPx: number, heightPx: number): View {
+		return fitted(this.plan, widthPx, heightPx);
 	}
 
 	/** What is wrong with a field, or with anything in it: `curtains[0].to` takes `curtains[0].to[1]`. */

@@ -29,7 +29,7 @@ test('no name lies on another, on the sun’s, or outside', () => {
 		plan.curtains.forEach((curtain, n) => (curtain.name = `Curtain of place ${n}`));
 		const view = fitted(plan, 280 + random() * 600, 340);
 		const sun = sunLabelBox(60 + random() * 160, 100 + random() * 100);
-		const labels = placeLabels(view, plan, { kind: 'walls', index: 0 }, [sun]);
+		const labels = placeLabels(view, plan, { kind: 'walls', index: 0 }, { taken: [sun] });
 		const boxes = [...labels].map(([path, { x, y, anchor }]) => {
 			const [, kind, index] = /^(\w+)\[(\d+)\]$/.exec(path)!;
 			const name =

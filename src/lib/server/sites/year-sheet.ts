@@ -1,7 +1,8 @@
 import { and, desc, eq } from 'drizzle-orm';
 import { demand } from '../auth/rights';
-import { plan, programme, zone } from '../db/schema';
+import { plan } from '../db/schema';
 import type { TenantTx } from '../db/transaction';
+import { sellingOf } from './selling';
 import { demandSite, livePlan } from './sites';
 
 /** Newest versions that a year sheet offers, besides the live one. */
@@ -26,23 +27,6 @@ export async function readYearSheet(tx: TenantTx, slug: string) {
 		live && !newest.some(({ version }) => version === live.version)
 			? [...newest, { version: live.version, state: live.state, body: live.body }]
 			: newest;
-	const programmes = await tx.sql
-		.select({
-			id: programme.id,
-			name: programme.name,
-			zone: zone.name,
-			seasonFrom: programme.seasonFrom,
-			seasonTo: programme.seasonTo,
-			openingHours: programme.openingHours,
-			daysOff: programme.daysOff,
-			slotMinutes: programme.slotMinutes,
-			gapMinutes: programme.gapMinutes,
-			gridMinutes: programme.gridMinutes,
-			capacity: programme.capacity
-		})
-		.from(programme)
-		.innerJoin(zone, eq(zone.id, programme.zoneId))
-		.where(and(eq(programme.operatorId, tx.operatorId), eq(programme.siteId, site.id)))
-		.orderBy(desc(programme.seasonFrom), programme.name);
+	const programmes = await sellingOf(tx, site.id);
 	return { site, plans, programmes };
 }
