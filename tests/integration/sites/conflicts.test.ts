@@ -7,7 +7,11 @@ import { quarryPlan } from '../../../src/lib/server/demo/plans.ts';
 import { moveSlotOrder } from '../../../src/lib/server/booking/move-slot.ts';
 import { demandProgramme, saveProgramme } from '../../../src/lib/server/programmes/programmes.ts';
 import { previewProgramme, publishProgramme } from '../../../src/lib/server/programmes/publish.ts';
-import { askForWindows, computeWindows } from '../../../src/lib/server/sites/compute.ts';
+import {
+	askForWindows,
+	computeWindows,
+	listComputations
+} from '../../../src/lib/server/sites/compute.ts';
 import { countComing } from '../../../src/lib/server/sites/conflict-basis.ts';
 import { lookAtConflicts } from '../../../src/lib/server/sites/conflicts.ts';
 import { decideConflicts, goLive } from '../../../src/lib/server/sites/decide.ts';
@@ -201,6 +205,9 @@ test('going live does what was chosen for each, all at once, and keeps is not as
 	expect(await readSlotRow(shop, off.id)).toMatchObject({ status: 'called_off' });
 	expect(await jobsOf('move_slot_order')).toHaveLength(2);
 	expect(await jobsOf('call_off_order')).toHaveLength(1);
+	// The season on sale is computed anew without being asked for.
+	const computations = await shop.asOwner((tx) => listComputations(tx, shop.site.siteId));
+	expect(computations).toMatchObject([{ state: 'waiting', daysDone: 0 }]);
 	const after = await look(null);
 	expect(after.undecided).toEqual([]);
 	expect(after.kept).toMatchObject([{ conflict: { slotId: kept.id }, byName: shop.owner.name }]);

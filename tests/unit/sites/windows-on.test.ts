@@ -1,14 +1,13 @@
 import { expect, test } from 'vitest';
-import { createSite, findWindows } from '../../../src/lib/optics/index.ts';
+import { createSite, findWindows, type Site } from '../../../src/lib/optics/index.ts';
 import { addDays, localDayRange } from '../../../src/lib/schedule/index.ts';
 import { windowsOn } from '../../../src/lib/server/sites/windows-on.ts';
 import { barePlan, curtain, fourByFour, quarryTerrace } from '../../support/plans.ts';
-import type { Plan } from '../../../src/lib/schemas/plan.ts';
 
 /** The windows in which a slot of a date can lie: those of a long range that reach into the date. */
-function expected(body: Plan, date: string, daysBack: number) {
-	const site = createSite(body);
-	const { startMs } = localDayRange({ timeZone: body.timeZone, from: date, to: date });
+function expected(site: Site, date: string, daysBack: number) {
+	const { timeZone } = site.clock;
+	const { startMs } = localDayRange({ timeZone, from: date, to: date });
 	return findWindows({ site, from: addDays(date, -daysBack), to: date }).map(
 		({ zone, windows }) => ({
 			zone,
@@ -21,11 +20,12 @@ test.each([
 	['the example', quarryTerrace()],
 	['four curtains and four walls', fourByFour()]
 ])('single dates of %s have the windows that a long range has', async (_, body) => {
-	const dates = ['2027-03-27', '2027-03-28', '2027-06-21', '2027-10-31', '2027-12-21'];
+	const site = createSite(body);
+	const dates = ['2027-03-27', '2027-03-28', '2027-10-31'];
 	const found = await windowsOn(body, dates);
 	let windowsSeen = 0;
 	for (const date of dates) {
-		for (const { zone, windows } of expected(body, date, 3)) {
+		for (const { zone, windows } of expected(site, date, 1)) {
 			expect(found.hasZone(zone)).toBe(true);
 			const own = found.of(zone, date)!;
 			windowsSeen += windows.length;
@@ -51,7 +51,7 @@ test('a window that no midnight closed for days is found from a date in its midd
 	});
 	const body = barePlan({ latitude: 78, longitude: 15, curtains: around });
 	const date = '2027-06-21';
-	const [wanted] = expected(body, date, 60);
+	const [wanted] = expected(createSite(body), date, 60);
 	const long = wanted!.windows.filter(({ endMs, startMs }) => endMs - startMs > 3 * 86_400_000);
 	expect(long.length).toBeGreaterThan(0);
 	const found = (await windowsOn(body, [date])).of(wanted!.zone, date)!;

@@ -1,5 +1,6 @@
 import { and, eq } from 'drizzle-orm';
 import { seenOf, targetOf, type Chosen, type Conflict } from '../../conflict-deeds';
+import { localClock } from '../../schedule';
 import { addToTrail } from '../audit/trail';
 import { demand } from '../auth/rights';
 import { lockSlots } from '../booking/move';
@@ -7,10 +8,13 @@ import { startSlotMove } from '../booking/move-slot';
 import { keptSlot, site } from '../db/schema';
 import { inTenant, type TenantTx } from '../db/transaction';
 import { Refusal } from '../failures';
+import { listProgrammes } from '../programmes/programmes';
 import { callOff } from '../weather/call-off';
+import { askForWindows } from './compute';
 import { readBasis, windowsFor, type Asked } from './conflict-basis';
 import { compare, type Asker, type Look } from './conflicts';
 import { makeLive } from './plans';
+import type { Site } from './sites';
 
 export interface Decisions {
 	/** Names what was looked at. */
@@ -69,7 +73,8 @@ export async function decideConflicts(
 
 /**
  * Makes a plan version the live one, and does what a person chose for the sold slots that no longer lie
- * in a window, all or nothing. Slots that are not named stay as they are, and undecided.
+ * in a window, all or nothing. Slots that are not named stay as they are, and undecided. The windows of the
+ * seasons that are on sale are computed at once: publishing them again is what comes next.
  * @throws Refusal when something has changed since they looked, or NumbersFirst
  */
 export async function goLive(
@@ -78,12 +83,22 @@ export async function goLive(
 	decisions: Decisions,
 	now: Date
 ): Promise<Decided> {
-	return act(asker, { slug, version }, decisions, now, (tx, { plan }) => {
+	return act(asker, { slug, version }, decisions, now, async (tx, { plan, site: at }) => {
 		if (plan.state === 'live') {
 			throw new Refusal('conflict', `Version ${version} is live already.`);
 		}
-		return makeLive(tx, slug, version);
+		await makeLive(tx, slug, version);
+		await computeSeasons(tx, at, now);
 	});
+}
+
+async function computeSeasons(tx: TenantTx, at: Site, now: Date): Promise<void> {
+	const today = localClock(at.timeZone).dateAt(now.getTime());
+	for (const { seasonFrom, seasonTo, publishedAt } of await listProgrammes(tx, at.id)) {
+		if (publishedAt && seasonTo >= today) {
+			await askForWindows(tx, at.id, { from: seasonFrom, to: seasonTo });
+		}
+	}
 }
 
 async function act(
