@@ -71,6 +71,8 @@ class Search {
 	readonly #onprogress: SearchInput['onprogress'];
 	readonly #stopped: Promise<never>;
 	readonly #lengthM: number;
+	/** The whole field, best first. */
+	#rough: readonly Suggestion[] = [];
 
 	constructor({ question, workers, effort = usualEffort, signal, onprogress }: SearchInput) {
 		this.#question = question;
@@ -94,7 +96,7 @@ class Search {
 			climbs > 0
 				? await this.#hills(await this.#climb(this.#clear(tops, climbs), field.length))
 				: tops.slice(0, counted);
-		await this.#count(climbs > 0 ? this.#withOthers(summits, tops) : summits);
+		await this.#count(climbs > 0 ? this.#withOthers(summits) : summits);
 		await this.#moveAbout();
 		await this.#each('flatness', [{ kind: 'sun' as const }], (minutes) => {
 			this.sunMinutes = minutes;
@@ -152,6 +154,7 @@ class Search {
 	async #judgeField(field: readonly Placement[]): Promise<Suggestion[]> {
 		const { closer, climbs, shown } = this.#effort;
 		const rough: Suggestion[] = [];
+		this.#rough = rough;
 		await this.#judge('field', field, false, (some) => {
 			rough.push(...some);
 			this.best = this.#clear([...this.best, ...some], shown);
@@ -207,13 +210,16 @@ class Search {
 	}
 
 	/** With few hills, the best places elsewhere as well. */
-	#withOthers(hills: readonly Suggestion[], found: readonly Suggestion[]): Suggestion[] {
+	#withOthers(hills: readonly Suggestion[]): Suggestion[] {
 		const all = [...hills];
 		const elsewhere = elsewhereOf(this.#lengthM);
-		for (const one of found) {
+		for (const one of this.#rough) {
 			if (all.length >= this.#effort.filled) break;
 			const placement = tidied(this.#question, one.placement);
-			if (all.every((other) => apart(other.placement, placement, elsewhere) >= 1)) {
+			if (
+				one.minutes > 0 &&
+				all.every((other) => apart(other.placement, placement, elsewhere) >= 1)
+			) {
 				all.push({ ...one, placement });
 			}
 		}

@@ -57,7 +57,7 @@ export interface SearchEffort {
 
 export const usualEffort: SearchEffort = {
 	closer: 96,
-	climbs: 20,
+	climbs: 12,
 	counted: 8,
 	shown: 5,
 	filled: 3
