@@ -31,7 +31,7 @@ export interface Conflict {
 	failedMoveId: string | null;
 }
 
-/** What a person chose for a slot: `keep`, `call_off` or `move:` with the slot to go to. */
+/** What a person chose for a slot: `keep`, `call_off`, `move:` with the slot to go to, or `later`: not yet. */
 export type Choice = string;
 
 export interface Chosen {
@@ -43,10 +43,13 @@ export interface Chosen {
 export const targetOf = (choice: Choice): string | null =>
 	choice.startsWith('move:') ? choice.slice('move:'.length) : null;
 
-/** Names choices, so that what was told in numbers is what is done. */
+/** Whether visitors feel it: it is told in numbers first, and wants a reason. */
+export const isHarsh = (choice: Choice): boolean => choice !== 'keep' && choice !== 'later';
+
+/** Names choices that visitors feel, so that what was told in numbers is what is done. */
 export function seenOf(chosen: Chosen[]): string {
 	return chosen
-		.filter(({ choice }) => choice !== 'keep')
+		.filter(({ choice }) => isHarsh(choice))
 		.map(({ slotId, choice }) => `${slotId} ${choice}`)
 		.sort()
 		.join('\n');
@@ -54,6 +57,8 @@ export function seenOf(chosen: Chosen[]): string {
 
 export interface Deeds {
 	kept: number;
+	/** Left for another time. */
+	later: number;
 	moved: { slots: number; orders: number; places: number };
 	calledOff: { slots: number; orders: number; places: number; amountMinor: number };
 }
@@ -62,13 +67,14 @@ export interface Deeds {
 export function deedsOf(conflicts: Conflict[], chosen: Chosen[]): Deeds {
 	const choiceOf = new Map(chosen.map(({ slotId, choice }) => [slotId, choice]));
 	const of = (test: (choice: Choice) => boolean) =>
-		conflicts.filter(({ slotId }) => test(choiceOf.get(slotId) ?? 'keep'));
+		conflicts.filter(({ slotId }) => test(choiceOf.get(slotId) ?? 'later'));
 	const sum = (rows: Conflict[], value: (row: Conflict) => number) =>
 		rows.reduce((total, row) => total + value(row), 0);
 	const moved = of((choice) => targetOf(choice) !== null);
 	const off = of((choice) => choice === 'call_off');
 	return {
 		kept: of((choice) => choice === 'keep').length,
+		later: of((choice) => choice === 'later').length,
 		moved: {
 			slots: moved.length,
 			orders: sum(moved, ({ orders }) => orders),
@@ -84,7 +90,7 @@ export function deedsOf(conflicts: Conflict[], chosen: Chosen[]): Deeds {
 }
 
 /** The same in sentences; empty when nothing was to be decided. */
-export function deedWords({ kept, moved, calledOff }: Deeds, currency: string): string[] {
+export function deedWords({ kept, later, moved, calledOff }: Deeds, currency: string): string[] {
 	const words: string[] = [];
 	if (kept > 0)
 		words.push(`Keep ${formatCount(kept, 'slot')} as ${kept === 1 ? 'it is' : 'they are'}.`);
@@ -98,6 +104,11 @@ export function deedWords({ kept, moved, calledOff }: Deeds, currency: string): 
 			calledOff.orders === 0
 				? `Call off ${formatCount(calledOff.slots, 'slot')}: nobody has paid, nothing goes back.`
 				: `Call off ${formatCount(calledOff.slots, 'slot')}: ${callOffWords(calledOff, currency)}.`
+		);
+	}
+	if (later > 0) {
+		words.push(
+			`Leave ${formatCount(later, 'slot')} to be decided: ${later === 1 ? 'it stays as it is, and listed.' : 'they stay as they are, and listed.'}`
 		);
 	}
 	return words;

@@ -143,12 +143,14 @@ test('a lower curtain takes the bow from sold slots, and a person decides about 
 		await expect(planner.getByRole('heading', { level: 1 })).toHaveText('Plan, version 2');
 		await planner.getByRole('link', { name: 'Make version 2 live' }).click();
 		await expect(planner.getByText('3 slots with 6 places sold', { exact: false })).toBeVisible();
-		await expect(planner.getByText('Keep 3 slots as they are.')).toBeVisible();
-		for (const slot of [kept, moved, off]) await expect(choiceFor(slot)).toHaveValue('keep');
+		// Nothing is decided by not looking.
+		await expect(planner.getByText('Leave 3 slots to be decided')).toBeVisible();
+		for (const slot of [kept, moved, off]) await expect(choiceFor(slot)).toHaveValue('later');
 		await expectAccessible(planner);
 	});
 
 	await test.step('chooses for each, is told in numbers, and is asked for the reason', async () => {
+		await choiceFor(kept).selectOption({ value: 'keep' });
 		await choiceFor(moved).selectOption({ value: `move:${target.id}` });
 		await choiceFor(off).selectOption({ value: 'call_off' });
 		await expect(planner.getByText('Keep 1 slot as it is.')).toBeVisible();

@@ -1,4 +1,5 @@
 import { z } from 'zod';
+import { isHarsh } from '../conflict-deeds';
 
 /** Most slots that one form decides on. */
 export const mostDecisions = 100;
@@ -12,7 +13,9 @@ export const decideSchema = z
 		slotId: z.array(z.uuid()).max(mostDecisions).default([]),
 		choice: z
 			.array(
-				z.string().regex(/^(keep|call_off|move:[0-9a-f-]{36})$/, 'Choose what becomes of the slot.')
+				z
+					.string()
+					.regex(/^(later|keep|call_off|move:[0-9a-f-]{36})$/, 'Choose what becomes of the slot.')
 			)
 			.max(mostDecisions)
 			.default([]),
@@ -21,7 +24,7 @@ export const decideSchema = z
 	.refine(({ slotId, choice }) => slotId.length === choice.length, {
 		message: 'Choose for each slot.'
 	})
-	.refine(({ choice, reason }) => reason.length >= 5 || choice.every((one) => one === 'keep'), {
+	.refine(({ choice, reason }) => reason.length >= 5 || !choice.some(isHarsh), {
 		message: 'Say why, in a sentence that visitors will read.',
 		path: ['reason']
 	});

@@ -32,23 +32,32 @@ const conflict = (slotId: string, more: Partial<Conflict> = {}): Conflict => ({
 	...more
 });
 
-test('what is not chosen is kept, and the sums are of the slots chosen alone', () => {
-	const all = [conflict('a'), conflict('b'), conflict('c', { orders: 1, sold: 1 }), conflict('d')];
+test('what is not chosen is left to be decided, and the sums are of the slots chosen alone', () => {
+	const all = [
+		conflict('a'),
+		conflict('b'),
+		conflict('c', { orders: 1, sold: 1 }),
+		conflict('d'),
+		conflict('e')
+	];
 	const deeds = deedsOf(all, [
 		{ slotId: 'b', choice: 'call_off' },
 		{ slotId: 'c', choice: 'move:x' },
 		{ slotId: 'd', choice: 'call_off' },
+		{ slotId: 'e', choice: 'keep' },
 		{ slotId: 'unknown', choice: 'call_off' }
 	]);
 	expect(deeds).toEqual({
 		kept: 1,
+		later: 1,
 		moved: { slots: 1, orders: 1, places: 1 },
 		calledOff: { slots: 2, orders: 4, places: 6, amountMinor: 9600 }
 	});
 	expect(deedWords(deeds, 'EUR')).toEqual([
 		'Keep 1 slot as it is.',
 		'Move 1 slot: 1 order, 1 place, write to 1 visitor. No money moves.',
-		'Call off 2 slots: refund 4 orders, 96.00 EUR, write to 4 visitors.'
+		'Call off 2 slots: refund 4 orders, 96.00 EUR, write to 4 visitors.',
+		'Leave 1 slot to be decided: it stays as it is, and listed.'
 	]);
 	expect(deedWords(deedsOf([], []), 'EUR')).toEqual([]);
 });
@@ -62,6 +71,7 @@ test('choices have one name whatever their order, and another for any other choi
 	expect(seenOf([a, { slotId: 'k', choice: 'keep' }])).toBe(seenOf([a]));
 	expect(seenOf([a, { ...b, choice: 'move:y' }])).not.toBe(seenOf([a, b]));
 	expect(seenOf([{ slotId: 'k', choice: 'keep' }])).toBe('');
+	expect(seenOf([{ slotId: 'k', choice: 'later' }])).toBe('');
 	expect([targetOf('move:x'), targetOf('keep'), targetOf('call_off')]).toEqual(['x', null, null]);
 });
 

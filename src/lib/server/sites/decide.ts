@@ -1,5 +1,5 @@
 import { and, eq } from 'drizzle-orm';
-import { seenOf, targetOf, type Chosen, type Conflict } from '../../conflict-deeds';
+import { isHarsh, seenOf, targetOf, type Chosen, type Conflict } from '../../conflict-deeds';
 import { localClock } from '../../schedule';
 import { addToTrail } from '../audit/trail';
 import { demand } from '../auth/rights';
@@ -138,7 +138,7 @@ async function act(
 function touchedBy(chosen: Chosen[]): string[] {
 	return chosen.flatMap(({ slotId, choice }) => {
 		const target = targetOf(choice);
-		return choice === 'keep' ? [] : target ? [slotId, target] : [slotId];
+		return !isHarsh(choice) ? [] : target ? [slotId, target] : [slotId];
 	});
 }
 
