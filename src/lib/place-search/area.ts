@@ -1,3 +1,4 @@
+import { latticePlaces } from '../optics/lattice';
 import { crossesItself, crossingsAt, distanceToOutline, polygonArea } from '../optics/polygon';
 import { endsOf, type Ground, type Placement } from './question';
 
@@ -64,4 +65,9 @@ export function widestM(area: readonly Ground[]): number {
 		for (const b of area) widest = Math.max(widest, Math.hypot(a[0] - b[0], a[1] - b[1]));
 	}
 	return widest;
+}
+
+/** Whether visitors of a zone stand in an area: somewhere on the lattice of their places. */
+export function coversZone(area: readonly Ground[], outline: readonly Ground[]): boolean {
+	return latticePlaces(outline).some(({ x, y }) => placeInArea(area, [x, y]));
 }

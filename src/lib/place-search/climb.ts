@@ -1,6 +1,6 @@
 import { distanceToOutline } from '../optics/polygon';
 import { standsIn } from './area';
-import { moved, turnBetweenDeg, type Ground, type Placement } from './question';
+import { endsOf, moved, turnBetweenDeg, type Ground, type Placement } from './question';
 
 /** How far a climb steps at first; it ends after steps of the last size. */
 export interface ClimbSteps {
@@ -45,8 +45,9 @@ function freeSteps(at: Placement, middle: Ground, metres: number, degrees: numbe
 }
 
 /**
- * More steps for a curtain that has an edge of the area within a step of it: along that edge, and about the
- * curtain's ends. Against a slanting edge the free ones alone lead nowhere.
+ * More steps for a curtain that has the edge of the area within a step of it: along the edges that its ends
+ * are near to, about its ends, and about the corners that it leans against. There the free ones alone lead
+ * nowhere: each of them would leave the area.
  */
 function edgeSteps(
 	at: Placement,
@@ -55,24 +56,23 @@ function edgeSteps(
 	metres: number,
 	degrees: number
 ): Step[] {
-	const ends = [1, -1].map((side): Ground => {
-		const { x, y } = moved(at, { alongM: (side * lengthM) / 2 });
-		return [x, y];
-	});
+	const { from, to } = endsOf(at, lengthM);
+	const ends: readonly Ground[] = [from, to];
 	const along = area.flatMap((a, i): Step[] => {
 		const b = area[(i + 1) % area.length]!;
 		if (!ends.some((end) => distanceToOutline([a, b], end) <= metres)) return [];
 		const edgeM = Math.hypot(b[0] - a[0], b[1] - a[1]) || 1;
 		const [dx, dy] = [((b[0] - a[0]) / edgeM) * metres, ((b[1] - a[1]) / edgeM) * metres];
-		return [(from, sign) => ({ ...from, x: from.x + sign * dx, y: from.y + sign * dy })];
+		return [(one, sign) => ({ ...one, x: one.x + sign * dx, y: one.y + sign * dy })];
 	});
-	if (along.length === 0) return [];
+	const leaning = area.filter((corner) => distanceToOutline(ends, corner) <= metres);
+	const hinges = along.length > 0 ? [...ends, ...leaning] : leaning;
 	return [
 		...along,
-		...ends.map(
-			(end): Step =>
-				(from, sign) =>
-					swung(from, end, sign * degrees)
+		...hinges.map(
+			(hinge): Step =>
+				(one, sign) =>
+					swung(one, hinge, sign * degrees)
 		)
 	];
 }

@@ -3,73 +3,22 @@ import { standsIn } from './area';
 import { apart, clearNiches, elsewhereOf, nicheOf, valleyBetween, wayBetween } from './clear';
 import type { ClimbSteps } from './climb';
 import type { PlaceTotals } from './count';
-import type { Flatness } from './flatness';
 import { tidyPlacement, type PlaceQuestion, type Placement } from './question';
+import {
+	byWorth,
+	judgedAs,
+	usualEffort,
+	worth,
+	type SearchEffort,
+	type SearchProgress,
+	type SearchResult,
+	type SearchStage,
+	type Suggestion
+} from './suggestion';
 import type { PlaceJob, PlaceResults } from './work';
 
 /** One that does jobs: a worker, or the same thread. It is given one job at a time. */
 export type PlaceWorker = <Job extends PlaceJob>(job: Job) => Promise<PlaceResults[Job['kind']]>;
-
-/** One of the best places, as far as it is known. */
-export interface Suggestion {
-	readonly placement: Placement;
-	/** Sellable minutes in the season, by parts of the sky. */
-	readonly minutes: number;
-	/** Nothing near it is better. False: the best of what lies elsewhere. */
-	readonly summit: boolean;
-	/** Counted by the engine to the second; null while it is not. */
-	readonly totals: PlaceTotals | null;
-	readonly flatness: Flatness | null;
-}
-
-/**
- * What a search is at: the field is judged; the best of it judged closer; climbed from; hills told apart;
- * the best counted to the second, and moved about.
- */
-export type SearchStage = 'field' | 'closer' | 'climb' | 'hills' | 'count' | 'flatness';
-
-/** How far a search is. */
-export interface SearchProgress {
-	readonly stage: SearchStage;
-	/** Of this stage. */
-	readonly done: number;
-	readonly of: number;
-	/** Placements judged so far in all stages. */
-	readonly judged: number;
-	/** The best so far, from different places, best first. */
-	readonly best: readonly Suggestion[];
-}
-
-/** What a search came to. */
-export interface SearchResult {
-	readonly suggestions: readonly Suggestion[];
-	/** The plan as it stands; null when it was stopped before. */
-	readonly present: PlaceTotals | null;
-	/** Minutes inside opening hours with the sun high enough and above the skyline; null as above. */
-	readonly sunMinutes: number | null;
-	readonly judged: number;
-	readonly stopped: boolean;
-}
-
-/** How much is searched. */
-export interface SearchEffort {
-	/** How many of the field are judged closer, and how many of those are climbed from. */
-	readonly closer: number;
-	readonly climbs: number;
-	/** How many are counted to the second, and how many of those are shown. */
-	readonly counted: number;
-	readonly shown: number;
-	/** So many places are shown at least, if there are such that are not on a hill of their own. */
-	readonly filled: number;
-}
-
-export const usualEffort: SearchEffort = {
-	closer: 96,
-	climbs: 20,
-	counted: 8,
-	shown: 5,
-	filled: 3
-};
 
 /** Placements in the field of a usual search. */
 export const FIELD_SIZE = 2400;
@@ -97,18 +46,6 @@ function tidied(question: PlaceQuestion, placement: Placement): Placement {
 	return standsIn(question.area, tidy, question.curtain.lengthM) ? tidy : placement;
 }
 
-const judgedAs = (placement: Placement, minutes: number, summit: boolean): Suggestion => ({
-	placement,
-	minutes,
-	summit,
-	totals: null,
-	flatness: null
-});
-
-/** The engine's count where there is one. */
-const worth = ({ totals, minutes }: Suggestion) => totals?.openMinutes ?? minutes;
-const byWorth = (a: Suggestion, b: Suggestion) => worth(b) - worth(a);
-
 /** A search that was asked to stop. It never gets out. */
 class Stopped extends Error {}
 
@@ -134,6 +71,8 @@ class Search {
 	readonly #onprogress: SearchInput['onprogress'];
 	readonly #stopped: Promise<never>;
 	readonly #lengthM: number;
+	/** The whole field, best first. */
+	#rough: readonly Suggestion[] = [];
 
 	constructor({ question, workers, effort = usualEffort, signal, onprogress }: SearchInput) {
 		this.#question = question;
@@ -157,7 +96,7 @@ class Search {
 			climbs > 0
 				? await this.#hills(await this.#climb(this.#clear(tops, climbs), field.length))
 				: tops.slice(0, counted);
-		await this.#count(climbs > 0 ? this.#withOthers(summits, tops) : summits);
+		await this.#count(climbs > 0 ? this.#withOthers(summits) : summits);
 		await this.#moveAbout();
 		await this.#each('flatness', [{ kind: 'sun' as const }], (minutes) => {
 			this.sunMinutes = minutes;
@@ -215,6 +154,7 @@ class Search {
 	async #judgeField(field: readonly Placement[]): Promise<Suggestion[]> {
 		const { closer, climbs, shown } = this.#effort;
 		const rough: Suggestion[] = [];
+		this.#rough = rough;
 		await this.#judge('field', field, false, (some) => {
 			rough.push(...some);
 			this.best = this.#clear([...this.best, ...some], shown);
@@ -270,13 +210,16 @@ class Search {
 	}
 
 	/** With few hills, the best places elsewhere as well. */
-	#withOthers(hills: readonly Suggestion[], found: readonly Suggestion[]): Suggestion[] {
+	#withOthers(hills: readonly Suggestion[]): Suggestion[] {
 		const all = [...hills];
 		const elsewhere = elsewhereOf(this.#lengthM);
-		for (const one of found) {
+		for (const one of this.#rough) {
 			if (all.length >= this.#effort.filled) break;
 			const placement = tidied(this.#question, one.placement);
-			if (all.every((other) => apart(other.placement, placement, elsewhere) >= 1)) {
+			if (
+				one.minutes > 0 &&
+				all.every((other) => apart(other.placement, placement, elsewhere) >= 1)
+			) {
 				all.push({ ...one, placement });
 			}
 		}

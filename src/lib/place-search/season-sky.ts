@@ -74,8 +74,8 @@ export interface SeasonSky {
 /** Reach of a large part, degrees: the bow is some forty in radius, a season's belt of sky some hundred wide. */
 const LARGE_DEG = 3;
 
-/** Reach of a small part, degrees: the sun moves as far in three minutes. */
-const SMALL_DEG = 0.75;
+/** Reach of a small part, degrees: the sun moves as far in four minutes. */
+const SMALL_DEG = 1;
 
 interface PartNode {
 	readonly part: SunPart;

@@ -35,6 +35,7 @@ if (what === 'table') {
 			programmes: [],
 			today: '2027-03-18',
 			start: { version: 1, zone: null, day: null, programme: null },
+			tableHref: () => '#',
 			onaddress: () => undefined
 		}
 	});

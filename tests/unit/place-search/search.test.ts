@@ -5,12 +5,8 @@ import { climb } from '../../../src/lib/place-search/climb';
 import { placementField } from '../../../src/lib/place-search/field';
 import { flatnessOf } from '../../../src/lib/place-search/flatness';
 import type { PlaceQuestion, Placement } from '../../../src/lib/place-search/question';
-import {
-	searchPlaces,
-	usualEffort,
-	type PlaceWorker,
-	type SearchProgress
-} from '../../../src/lib/place-search/search';
+import { searchPlaces, type PlaceWorker } from '../../../src/lib/place-search/search';
+import { usualEffort, type SearchProgress } from '../../../src/lib/place-search/suggestion';
 import { PlaceWork } from '../../../src/lib/place-search/work';
 import { createSite, findWindows } from '../../../src/lib/optics';
 import { yearTotals } from '../../../src/lib/schedule';

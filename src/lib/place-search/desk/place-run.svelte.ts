@@ -1,12 +1,7 @@
 import { placementField } from '../field';
 import type { PlaceQuestion } from '../question';
-import {
-	FIELD_SIZE,
-	searchPlaces,
-	type SearchProgress,
-	type SearchResult,
-	type Suggestion
-} from '../search';
+import { FIELD_SIZE, searchPlaces } from '../search';
+import type { SearchProgress, SearchResult, Suggestion } from '../suggestion';
 import { WorkerPool } from './worker-pool';
 
 /** A search for a place going on in workers, as a page shows it. */

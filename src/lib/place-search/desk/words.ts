@@ -1,7 +1,7 @@
 import { formatCount, formatShare } from '../../format';
 import { KEEPS, TRIED_DEG, TRIED_M, type Flatness } from '../flatness';
 import { endsOf, type Placement } from '../question';
-import type { SearchStage } from '../search';
+import type { SearchStage } from '../suggestion';
 
 const stages: Record<SearchStage, string> = {
 	field: 'places judged',
