@@ -26,3 +26,12 @@ export async function jobWithKey(key: string): Promise<StoredJob | undefined> {
 	);
 	return rows[0];
 }
+
+/** The jobs of a task that lie in the queue. */
+export function jobsOf(task: string): Promise<{ payload: { orderId: string } }[]> {
+	return adminQuery(
+		`select payload from graphile_worker._private_jobs j
+		join graphile_worker._private_tasks t on t.id = j.task_id where t.identifier = $1`,
+		[task]
+	);
+}
