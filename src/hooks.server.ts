@@ -78,6 +78,9 @@ const headers: Handle = async ({ event, resolve }) => {
 
 /** Largest body that a form may send, in bytes; uploads have routes of their own. */
 const formLimit = 256 * 1024;
+/** Forms that carry a plan, with what it was before: its lists may be long, and too long ones get an answer. */
+const planLimit = 8 * 1024 * 1024;
+const planRoutes = /^\/desk\/\[operator\]\/sites\/\[site\]\/(?:plan|table)\//;
 const uploadLimit = 12 * 1024 * 1024;
 
 /**
@@ -101,8 +104,13 @@ const guardWrites: Handle = async ({ event, resolve }) => {
 			await refuseWrite(event, 411, 'Say how long this is.');
 		}
 		const length = Number(said ?? 0);
-		if (length > (isUpload ? uploadLimit : formLimit)) {
-			const most = isUpload ? '12 MB' : '256 kB';
+		const carriesPlan = planRoutes.test(event.route.id ?? '');
+		const [limit, most] = isUpload
+			? ([uploadLimit, '12 MB'] as const)
+			: carriesPlan
+				? ([planLimit, '8 MB'] as const)
+				: ([formLimit, '256 kB'] as const);
+		if (length > limit) {
 			await refuseWrite(event, 413, `This is too large: at most ${most} can be sent.`);
 		}
 		// SvelteKit checks the origin of forms; this does the same for JSON sent with a session.

@@ -1,5 +1,6 @@
 import { parseArgs } from 'node:util';
 import type { Section } from './measure';
+import { framesSection } from './sections/frames';
 import { placeSearchSection } from './sections/place-search';
 import { planTableSection } from './sections/plan-table';
 import { windowsSection } from './sections/windows';
@@ -10,7 +11,12 @@ import { windowsSection } from './sections/windows';
  *     npm run --silent bench                          every section, as a table
  *     npm run --silent bench -- --only windows --json one section, as [{ "name", "value", "unit" }]
  */
-const sections: readonly Section[] = [windowsSection, planTableSection, placeSearchSection];
+const sections: readonly Section[] = [
+	windowsSection,
+	planTableSection,
+	placeSearchSection,
+	framesSection
+];
 
 async function main(): Promise<number> {
 	const { values } = parseArgs({

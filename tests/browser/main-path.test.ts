@@ -76,6 +76,8 @@ test('from a bare place to the money in the ledger', async ({ browser }) => {
 		await planner.getByRole('button', { name: 'Save version 1' }).click();
 		await expect(planner.getByText('Saved.', { exact: true })).toBeVisible();
 		await expect(planner.getByLabel('Curtain 1, Top')).toHaveValue('6.8');
+		await planner.getByRole('link', { name: 'Make version 1 live' }).click();
+		await expect(planner.getByText('There is no coming slot yet.')).toBeVisible();
 		await planner.getByRole('button', { name: 'Make version 1 live' }).click();
 	});
 

@@ -105,6 +105,10 @@ test('a planner reads, walks, saves and compares a year', async ({ page }) => {
 		await expect(day).toContainText(`${time(found!.startMs)}–${time(found!.endMs)}`);
 		await expect(day).toContainText(`${Math.round(found!.peakArcDeg)}° of arc`);
 		await expect(sheet).toHaveAttribute('aria-valuetext', /^Tuesday 2 March: bow from/);
+		await expect(day.getByRole('link', { name: 'On the plan table' })).toHaveAttribute(
+			'href',
+			new RegExp(`/table/1\\?date=${year}-03-02$`)
+		);
 		await sheet.press('End');
 		await expect(page.getByRole('heading', { name: 'Friday 31 December' })).toBeVisible();
 		// The first of July is row 181 of 365.

@@ -1,3 +1,4 @@
+import { v7 as uuidv7 } from 'uuid';
 import { hashPassword } from '../../src/lib/server/auth/passwords.ts';
 import { openAccount } from '../../src/lib/server/auth/account.ts';
 import { signIn, type SignInAttempt } from '../../src/lib/server/auth/sign-in.ts';
@@ -46,7 +47,7 @@ export async function makePerson(name = 'Juno Fell'): Promise<Person> {
 }
 
 /** An operator with an owner. */
-export async function makeOperator(name = 'Test Mist Gardens'): Promise<Operator> {
+export async function makeOperator(name = `Test Mist Gardens ${uuidv7()}`): Promise<Operator> {
 	const owner = await makePerson('Oda Owner');
 	const { id, slug } = await openOperator(owner, name, null);
 	return { operatorId: id, slug, owner };

@@ -4,8 +4,8 @@
  */
 export { createSite, type Curtain, type Eye, type Sheet, type Site, type Zone } from './site';
 export { sunPosition, type SunPosition } from './sun';
-export { waterDensityKgM3, waterRefractiveIndex } from './water';
-export { bowRadiusDeg, descartesBow } from './bow-radius';
+export { WATER_TEMPERATURE_RANGE_C, waterDensityKgM3, waterRefractiveIndex } from './water';
+export { bowRadiusDeg, descartesBow, DROP_DIAMETER_RANGE_UM } from './bow-radius';
 export { ringDirection, ringFrame, type RingFrame } from './ring';
 export {
 	stateAt,

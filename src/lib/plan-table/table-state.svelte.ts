@@ -242,6 +242,11 @@ export class TableState {
 		this.select(to);
 	}
 
+	/** What was last saved, or seen to be saved: what a merge begins from. */
+	get saved(): Plan {
+		return this.#saved;
+	}
+
 	markSaved(plan: Plan): void {
 		this.#saved = plan;
 	}

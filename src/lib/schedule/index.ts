@@ -4,6 +4,7 @@
  */
 export { isTimeZone, localClock, type LocalClock, type LocalDate } from './local-clock';
 export { addDays, isLocalDate, localDayRange, MOST_DAYS, parseLocalDate } from './local-days';
+export { coverOf, type Cover } from './cover';
 export { parseInstant } from './instants';
 export {
 	openIntervals,

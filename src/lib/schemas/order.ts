@@ -30,6 +30,14 @@ export const cancelOrderSchema = z.object({
 	words: z.string().trim().max(500, 'Use at most 500 characters.').default('')
 });
 
+/** What moves an order to another slot; the page gives the move its name. */
+export const moveOrderSchema = z.object({
+	moveId: z.uuid(),
+	slotId: z.uuid('Choose a slot.'),
+	wishedBy: z.enum(['visitor', 'operator']),
+	words: z.string().trim().max(500, 'Use at most 500 characters.').default('')
+});
+
 export const refundIdSchema = z.object({ refundId: z.uuid() });
 
 export const slotIdSchema = z.object({ slotId: z.uuid() });

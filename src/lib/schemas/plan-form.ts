@@ -17,7 +17,12 @@ export const sheetFields = [
 	'bottom',
 	'top'
 ] as const;
-export const curtainFields = [...sheetFields, 'dropDiameter', 'waterTemperature'] as const;
+export const curtainFields = [
+	...sheetFields,
+	'dropDiameter',
+	'waterTemperature',
+	'waterFlow'
+] as const;
 export const zoneFields = ['name', 'outline', 'floor', 'eyeHeights'] as const;
 
 /** Lists of a plan that are tables, with the text fields of a row. */
@@ -34,15 +39,16 @@ export function typedNumber(text: string): number {
 
 /**
  * Lines of numbers: parted by semicolons, tabs or spaces, with decimal points or commas; or by commas,
- * with decimal points. A byte-order mark and a first line of words are passed over.
+ * with decimal points. A byte-order mark, quotation marks and a first line of words are passed over.
  */
 export function typedRows(text: string): number[][] {
 	const lines = text
 		.replace(/^\uFEFF/, '')
+		.replaceAll(/["']/g, '')
 		.split(/\r\n|\r|\n/)
 		.map((line) => line.trim())
 		.filter((line) => line !== '');
-	if (lines[0] && /^[^\d+\-−.,]*$/.test(lines[0].replaceAll(/["']/g, ''))) lines.shift();
+	if (lines[0] && /\p{L}/u.test(lines[0]) && !/\d/.test(lines[0])) lines.shift();
 	return lines.map((line) => {
 		const wide = line.split(/[;\t]|\s+/).filter((part) => part !== '');
 		// `1,5 2,5` are two numbers; `1.5,2.5` and `1,2` are parted by their comma.
@@ -97,6 +103,7 @@ export function planFromFields(
 				...sheet(value, text('name')),
 				dropDiameter: value('dropDiameter'),
 				...(text('waterTemperature') ? { waterTemperature: value('waterTemperature') } : {}),
+				...(text('waterFlow') ? { waterFlow: value('waterFlow') } : {}),
 				enabled: fields[`curtains[${row}].enabled`] !== undefined
 			};
 		}),
@@ -124,15 +131,47 @@ export function planFromFields(
 	};
 	const read = readPlan(input);
 	if (read.ok) return { plan: read.plan };
-	return { faults: read.faults.map((fault) => ({ ...fault, path: fieldOf(fault.path, rows) })) };
+	return { faults: faultsOfFields(read.faults, rows) };
 }
+
+/** Faults by field. Those of a list that is one field are one: the first, with its place in the list. */
+function faultsOfFields(faults: readonly PlanFault[], rows: Record<Table, number[]>): PlanFault[] {
+	const lists = new Map<string, { message: string; count: number }>();
+	const told: PlanFault[] = [];
+	for (const { path, message } of faults) {
+		const field = fieldOf(path, rows);
+		const place = listFields.exec(path)?.[2];
+		if (place === undefined) {
+			told.push({ path: field, message });
+			continue;
+		}
+		const known = lists.get(field);
+		if (known) known.count++;
+		else
+			lists.set(field, {
+				message: `${placeWord(field)} ${Number(place) + 1} ${message}`,
+				count: 1
+			});
+	}
+	for (const [path, { message, count }] of lists) {
+		told.push({ path, message: count > 1 ? `${message} (and ${count - 1} more)` : message });
+	}
+	return told;
+}
+
+/** Lists of numbers that are typed in one field, and the place of what is wrong in them. */
+const listFields = /^(skyline|zones\[\d+\]\.(?:outline|eyeHeights))(?:\[(\d+)\])?.*$/;
+
+/** What the places of such a list are called. */
+const placeWord = (field: string) =>
+	field === 'skyline' ? 'line' : field.endsWith('outline') ? 'corner' : 'height';
 
 /** The name of the field that a fault is about, with the row's place in the form. */
 function fieldOf(path: string, rows: Record<Table, number[]>): string {
 	const placed = path.replace(/^(curtains|walls|zones)\[(\d+)\]/, (_, table: Table, i: string) => {
 		return `${table}[${rows[table][Number(i)] ?? i}]`;
 	});
-	return placed.replace(/^(skyline|zones\[\d+\]\.(?:outline|eyeHeights)).*$/, '$1');
+	return placed.replace(listFields, '$1');
 }
 
 /** A plan as the fields of its tables. */
@@ -157,6 +196,7 @@ export function fieldsFromPlan(plan: Plan): PlanFields {
 		setSheet(`curtains[${i}]`, curtain);
 		set(`curtains[${i}].dropDiameter`, curtain.dropDiameter);
 		set(`curtains[${i}].waterTemperature`, curtain.waterTemperature);
+		set(`curtains[${i}].waterFlow`, curtain.waterFlow);
 		if (curtain.enabled ?? true) set(`curtains[${i}].enabled`, 'on');
 	});
 	(plan.walls ?? []).forEach((wall, i) => setSheet(`walls[${i}]`, wall));

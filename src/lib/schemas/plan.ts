@@ -12,6 +12,9 @@ import { isTimeZone } from '../schedule/local-clock';
  * Names may be absent: nothing is computed from them.
  */
 
+/** Litres a minute that a curtain may take. */
+const MOST_FLOW_L_PER_MIN = 100_000;
+
 /** Furthest that a corner may lie from the datum, and highest that a sheet may reach, in metres. */
 const FURTHEST_M = 10_000;
 
@@ -85,6 +88,8 @@ const curtainSchema = withSheetRules(
 		dropDiameter: number(DROP_DIAMETER_RANGE_UM),
 		/** Degrees C; 15 when absent. */
 		waterTemperature: number(WATER_TEMPERATURE_RANGE_C).optional(),
+		/** Litres a minute of all its nozzles together; no window depends on it. Unknown when absent. */
+		waterFlow: number({ least: 0, greatest: MOST_FLOW_L_PER_MIN }).optional(),
 		/** True when absent. */
 		enabled: z.boolean('must be true or false').optional()
 	})

@@ -9,6 +9,9 @@ import {
 	type TenantTx
 } from '../../../src/lib/server/db/transaction.ts';
 import { listJobs, retryJob } from '../../../src/lib/server/jobs/admin.ts';
+import { countComing, readBasis } from '../../../src/lib/server/sites/conflict-basis.ts';
+import { demandSlotMove, startSlotMove } from '../../../src/lib/server/booking/move-slot.ts';
+import { moveOrder } from '../../../src/lib/server/booking/move.ts';
 import { listLetters } from '../../../src/lib/server/mail/read.ts';
 import {
 	changeRole,
@@ -50,6 +53,24 @@ const SERVICES: [name: string, right: Right, run: (tx: TenantTx) => Promise<unkn
 		'changeOperator',
 		'operator.settings',
 		(tx) => changeOperator(tx, { name: 'Renamed', requireSecondStep: false })
+	],
+	[
+		'moveOrder',
+		'orders.move',
+		(tx) =>
+			moveOrder(tx, NOBODY, NOBODY, { moveId: NOBODY, wishedBy: 'visitor', words: '' }, new Date())
+	],
+	[
+		'startSlotMove',
+		'conflicts.decide',
+		(tx) => startSlotMove(tx, { fromSlotId: NOBODY, toSlotId: NOBODY, words: '' }, new Date())
+	],
+	['demandSlotMove', 'orders.read', (tx) => demandSlotMove(tx, NOBODY)],
+	['countComing', 'conflicts.decide', (tx) => countComing(tx, 'nowhere', new Date())],
+	[
+		'readBasis',
+		'conflicts.decide',
+		(tx) => readBasis(tx, { slug: 'nowhere', version: null }, new Date())
 	],
 	['readTrail', 'trail.read', (tx) => readTrail(tx, { most: 5 })],
 	['listLetters', 'letters.read', (tx) => listLetters(tx, { most: 5 })]

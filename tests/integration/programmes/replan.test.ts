@@ -9,7 +9,7 @@ import {
 	computeWindows,
 	demandComputation
 } from '../../../src/lib/server/sites/compute.ts';
-import { addPlan, makeLive, savePlan } from '../../../src/lib/server/sites/plans.ts';
+import { addPlan, mergePlan, makeLive, savePlan } from '../../../src/lib/server/sites/plans.ts';
 import { adminQuery } from '../../support/database.ts';
 import { refusalOf } from '../../support/refusals.ts';
 import { buy, hold, openShop, readSlotRow, type Shop } from '../../support/shop.ts';
@@ -99,6 +99,27 @@ test('two who edit one draft: the second is told, and nobody’s work is lost', 
 	expect(done.filter(({ status }) => status === 'fulfilled')).toHaveLength(1);
 	const refused = done.find(({ status }) => status === 'rejected') as PromiseRejectedResult;
 	expect(refused.reason).toMatchObject({ kind: 'conflict' });
+});
+
+test('who is told may bring both together, and saves from there', async () => {
+	const version = await shop.asOwner((tx) => addPlan(tx, shop.site.slug, quarryPlan));
+	const theirs = { ...quarryPlan, skyline: [[0, 2]] as [number, number][] };
+	const mine = { ...quarryPlan, rule: { ...quarryPlan.rule, minimumArc: 50 } };
+	const at = { slug: shop.site.slug, version };
+	await shop.asOwner((tx) => savePlan(tx, { ...at, revision: 1, body: theirs }));
+	const refused = await refusalOf(
+		shop.asOwner((tx) => savePlan(tx, { ...at, revision: 1, body: mine }))
+	);
+	expect(refused.message).toMatch(/^\S.* has saved this version since/);
+	const merge = await shop.asOwner((tx) => mergePlan(tx, { ...at, base: quarryPlan, mine }));
+	expect(merge).toMatchObject({ revision: 2, taken: 1, clashes: [], theirs });
+	expect(merge.plan).toMatchObject({ skyline: [[0, 2]], rule: { minimumArc: 50 } });
+	// Merging saved nothing yet; and while they save again, what was merged does not overwrite it.
+	await shop.asOwner((tx) => savePlan(tx, { ...at, revision: 2, body: theirs }));
+	const late = shop.asOwner((tx) =>
+		savePlan(tx, { ...at, revision: merge.revision, body: merge.plan })
+	);
+	expect((await refusalOf(late)).kind).toBe('conflict');
 });
 
 test('a plan that takes the bow away shows its sold slots as conflicts and moves none', async () => {

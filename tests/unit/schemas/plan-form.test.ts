@@ -9,8 +9,12 @@ const site = { name, latitude, longitude, elevation, timeZone };
 
 describe('a plan as tables', () => {
 	test('comes back as it was', () => {
-		const read = readPlan(plan);
-		expect(read.ok && planFromFields(fieldsFromPlan(plan), site)).toEqual({
+		const [first, ...others] = plan.curtains;
+		const read = readPlan({
+			...plan,
+			curtains: [{ ...first, waterTemperature: 12, waterFlow: 37.5 }, ...others]
+		});
+		expect(read.ok && planFromFields(fieldsFromPlan(read.plan), site)).toEqual({
 			plan: read.ok && read.plan
 		});
 	});
@@ -38,8 +42,12 @@ describe('a plan as tables', () => {
 			'zones[0].eyeHeights': '1,2; tall'
 		};
 		const answer = planFromFields(fields, site);
-		const paths = 'faults' in answer ? answer.faults.map(({ path }) => path) : [];
-		expect(new Set(paths)).toEqual(new Set(['skyline', 'zones[0].outline', 'zones[0].eyeHeights']));
+		// One message at each field, however much is wrong in it.
+		expect('faults' in answer && answer.faults).toEqual([
+			{ path: 'zones[0].outline', message: 'must not cross or touch itself' },
+			{ path: 'skyline', message: 'line 2 must be a finite number' },
+			{ path: 'zones[0].eyeHeights', message: 'height 2 must be a finite number' }
+		]);
 	});
 });
 
@@ -69,14 +77,28 @@ describe('lines of numbers', () => {
 		['tabs', '0\t6\n60\t9.5'],
 		['spaces and decimal commas', '0 6\n60 9,5'],
 		['a byte-order mark and a heading', '\uFEFFazimuth;altitude\n0;6\n60;9,5'],
+		['a heading parted by commas', 'azimuth,altitude\n0,6\n60,9.5'],
+		['quotation marks', '"azimuth","altitude"\r\n"0","6"\r\n"60","9.5"'],
 		['empty lines and old line ends', '0, 6\r\r60, 9.5']
 	])('with %s', (_, text) => expect(typedRows(text)).toEqual(rows));
 
-	test('a hundred thousand of them are read, and refused by the plan in one message', () => {
-		const text = Array.from({ length: 100_000 }, (_, i) => `${i};1`).join('\n');
+	test.each([
+		['a hundred thousand', 100_000, (i: number) => `${i};1`, 'must have at most 3600'],
+		[
+			'three thousand the wrong way round',
+			3000,
+			(i: number) => `${359 - i / 10};1`,
+			'line 2 must be above the azimuth before it, 359 (and 2998 more)'
+		],
+		[
+			'three thousand without altitudes',
+			3000,
+			(i: number) => `${i}`,
+			'line 1 must be [azimuth, altitude] in degrees (and 2999 more)'
+		]
+	])('%s are refused in one message at the field', (_, count, line, message) => {
+		const text = Array.from({ length: count }, (__, i) => line(i)).join('\n');
 		const answer = planFromFields({ ...fieldsFromPlan(plan), skyline: text }, site);
-		expect(
-			'faults' in answer && answer.faults.filter(({ path }) => path === 'skyline').length
-		).toBeGreaterThan(0);
+		expect('faults' in answer && answer.faults).toEqual([{ path: 'skyline', message }]);
 	});
 });

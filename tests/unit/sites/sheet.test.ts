@@ -1,9 +1,11 @@
 import { expect, test } from 'vitest';
+import { createSite, findWindows } from '$lib/optics';
 import type { Plan } from '$lib/schemas/plan';
 import { quarryPlan } from '$lib/server/demo/plans';
+import { yearOfPlan } from '$lib/server/sites/plan-year';
 import { sheetPdf } from '$lib/server/sites/sheet';
 
-const sheetOf = (plan: Plan) =>
+const sheetOf = async (plan: Plan) =>
 	sheetPdf({
 		operator: 'Test Mist Gardens',
 		site: 'Łąka, Привет',
@@ -11,7 +13,7 @@ const sheetOf = (plan: Plan) =>
 		state: 'draft',
 		changedAt: new Date('2027-01-01T00:00:00Z'),
 		plan,
-		season: null
+		year: await yearOfPlan(plan, 2027)
 	});
 
 const curtain = quarryPlan.curtains[0]!;
@@ -39,4 +41,14 @@ test.each<[string, Plan]>([
 	expect(first.subarray(0, 5).toString()).toBe('%PDF-');
 	expect(first.equals(second)).toBe(true);
 	expect(first.toString('latin1')).not.toContain('NaN');
+});
+
+test('its year is that of the engine, month by month', async () => {
+	const year = await yearOfPlan(quarryPlan, 2027);
+	const whole = findWindows({
+		site: createSite(quarryPlan),
+		from: '2027-01-01',
+		to: '2027-12-31'
+	});
+	expect(year!.zones.map(({ windows }) => windows)).toEqual(whole.map(({ windows }) => windows));
 });

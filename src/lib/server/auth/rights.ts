@@ -14,6 +14,8 @@ const holders = {
 	'weather.decide': ['planner'],
 	'orders.read': ['planner', 'box_office', 'bookkeeper'],
 	'orders.write': ['box_office'],
+	'orders.move': ['box_office'],
+	'conflicts.decide': ['planner'],
 	'gate.use': ['steward', 'box_office', 'planner'],
 	'money.read': ['bookkeeper'],
 	'money.settings': []

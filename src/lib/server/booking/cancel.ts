@@ -1,4 +1,4 @@
-import { and, eq } from 'drizzle-orm';
+import { and, eq, inArray } from 'drizzle-orm';
 import { addToTrail } from '../audit/trail';
 import { order, payment, ticket } from '../db/schema';
 import type { RefundPolicy } from '../db/schema/programmes';
@@ -58,7 +58,13 @@ export async function cancelPaidOrder(
 	await tx.sql
 		.update(ticket)
 		.set({ status: 'void', usedAt: null })
-		.where(and(eq(ticket.operatorId, tx.operatorId), eq(ticket.orderId, orderId)));
+		.where(
+			and(
+				eq(ticket.operatorId, tx.operatorId),
+				eq(ticket.orderId, orderId),
+				inArray(ticket.status, ['valid', 'used'])
+			)
+		);
 	await tx.sql
 		.update(order)
 		.set({ status: 'cancelled', closedAt: now, closedReason: reason })

@@ -5,6 +5,7 @@ import { order, site, slot, zone } from '../db/schema';
 import type { TenantTx } from '../db/transaction';
 import { env } from '../env';
 import { readOperator } from '../operators/operators';
+import { listMoves } from './moves-of-order';
 import { visitorPath } from './visitor-key';
 
 /** A ticket's code as a QR picture. */
@@ -30,7 +31,8 @@ export async function orderCalendar(tx: TenantTx, orderId: string): Promise<stri
 			site: site.name,
 			latitudeDeg: site.latitudeDeg,
 			longitudeDeg: site.longitudeDeg,
-			changedAt: order.createdAt
+			createdAt: order.createdAt,
+			closedAt: order.closedAt
 		})
 		.from(order)
 		.innerJoin(slot, eq(slot.id, order.slotId))
@@ -38,6 +40,7 @@ export async function orderCalendar(tx: TenantTx, orderId: string): Promise<stri
 		.innerJoin(site, eq(site.id, slot.siteId))
 		.where(and(eq(order.operatorId, tx.operatorId), eq(order.id, orderId)));
 	if (!found) return null;
+	const moves = await listMoves(tx, orderId);
 	const operator = await readOperator(tx);
 	const live = found.status === 'paid';
 	const calendar = ical({
@@ -46,8 +49,9 @@ export async function orderCalendar(tx: TenantTx, orderId: string): Promise<stri
 	});
 	calendar.createEvent({
 		id: `${orderId}@${new URL(env().ORIGIN).hostname}`,
-		sequence: live ? 0 : 1,
-		stamp: found.changedAt,
+		// Each move, and the end, follows on what calendars already have under this name.
+		sequence: moves.length + (live ? 0 : 1),
+		stamp: found.closedAt ?? moves.at(-1)?.createdAt ?? found.createdAt,
 		start: found.startsAt,
 		end: found.endsAt,
 		summary: `${found.site}, ${found.zone}`,

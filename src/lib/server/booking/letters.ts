@@ -64,19 +64,67 @@ export async function writeTicketLetter(
 				...(visit.arrival ? [visit.arrival] : []),
 				'The ground can be wet and slippery. Do not look into the sun.'
 			],
-			codes: tickets.map((ticket) => ({
-				contentId: `${ticket.id}@ticket`,
-				label: ticket.name,
-				code: groupedCode(ticket.code)
-			})),
+			codes: codesOf(tickets),
 			action: { label: 'See or cancel the order', url: orderUrl(operator, order.id) },
 			note: `Order ${order.reference}. If the weather does not hold, we write to this address and the money goes back by itself.`,
 			from: operator.name
 		},
 		enclosures: [
-			{ kind: 'tickets', orderId: order.id },
+			{ kind: 'tickets', orderId: order.id, ticketIds: tickets.map(({ id }) => id) },
 			...(receiptId ? [{ kind: 'document' as const, documentId: receiptId }] : [])
 		]
+	});
+}
+
+function codesOf(tickets: Awaited<ReturnType<typeof listTickets>>) {
+	return tickets.map((ticket) => ({
+		contentId: `${ticket.id}@ticket`,
+		label: ticket.name,
+		code: groupedCode(ticket.code)
+	}));
+}
+
+/**
+ * Told to a visitor whose order went to another slot: when it was, when it is, and the new tickets.
+ * @param order as it is now, in its new slot
+ */
+export async function writeMoveLetter(
+	tx: TenantTx,
+	order: LetterOrder,
+	told: { fromSlotId: string; words: string; fullRefund: boolean }
+): Promise<void> {
+	const operator = await readOperator(tx);
+	const before = await visitOf(tx, told.fromSlotId);
+	const visit = await visitOf(tx, order.slotId);
+	const tickets = await listTickets(tx, order.id);
+	const back =
+		order.totalMinor > 0
+			? ` and ${formatMoney(order.totalMinor, order.currency)} goes back in full, whatever the terms of sale say`
+			: '';
+	await writeLetter(tx, {
+		kind: 'moved',
+		to: order.visitorEmail,
+		content: {
+			subject: `Moved: ${visit.site}, now ${visit.day}, ${formatTime(visit.startsAt, visit.timeZone)}`,
+			greeting: `Dear ${order.visitorName},`,
+			paragraphs: [
+				`your visit to ${visit.site} on ${before.day}, ${before.times} is moved. You now have ${formatCount(order.places, 'place')} at ${visit.zone}:\n${visit.day}, ${visit.times}.`,
+				...(told.words ? [told.words] : []),
+				'The tickets that you had are no longer valid. Show these codes at the gate.',
+				...(told.fullRefund
+					? [
+							`If the new time does not suit you, cancel before it begins,${back || ' by the link below'}.`
+						]
+					: []),
+				...(visit.arrival ? [visit.arrival] : []),
+				'The ground can be wet and slippery. Do not look into the sun.'
+			],
+			codes: codesOf(tickets),
+			action: { label: 'See or cancel the order', url: orderUrl(operator, order.id) },
+			note: `Order ${order.reference}. The price stays as you paid it. If the weather does not hold, we write to this address and the money goes back by itself.`,
+			from: operator.name
+		},
+		enclosures: [{ kind: 'tickets', orderId: order.id, ticketIds: tickets.map(({ id }) => id) }]
 	});
 }
 

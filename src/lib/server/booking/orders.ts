@@ -6,6 +6,8 @@ import type { TenantTx } from '../db/transaction';
 import { Refusal } from '../failures';
 import { documentsOfOrder } from '../invoicing/documents';
 import { cancelPaidOrder, cancelPendingOrder, refundPercent } from './cancel';
+import { listMoves, wasMovedByOperator } from './moves-of-order';
+import { lockOrder } from './settle';
 import { readRefundPolicy } from './slots-for-sale';
 import { listTickets } from './tickets';
 
@@ -24,6 +26,7 @@ const headColumns = {
 	paidAt: order.paidAt,
 	slotId: order.slotId,
 	programmeId: slot.programmeId,
+	siteId: slot.siteId,
 	localDate: slot.localDate,
 	startsAt: slot.startsAt,
 	endsAt: slot.endsAt,
@@ -70,7 +73,8 @@ export async function readOrder(tx: TenantTx, orderId: string) {
 		lines,
 		refunds,
 		paidMinor: paid?.amountMinor ?? 0,
-		tickets: await listTickets(tx, orderId),
+		tickets: await listTickets(tx, orderId, { moved: true }),
+		moves: await listMoves(tx, orderId),
 		documents: await documentsOfOrder(tx, orderId)
 	};
 }
@@ -87,17 +91,25 @@ export async function demandOrder(tx: TenantTx, orderId: string): Promise<WholeO
 
 /** What a visitor who cancels now would get back. */
 export async function cancellationTerms(tx: TenantTx, found: WholeOrder, now: Date) {
-	const policy = await readRefundPolicy(tx, found.programmeId);
+	// The terms are those of the programme under which it was sold, wherever it stands now.
+	const [first] = found.moves;
+	const policy = await readRefundPolicy(tx, first?.fromProgrammeId ?? found.programmeId);
 	const used = found.tickets.some(({ status }) => status === 'used');
+	const movedByOperator = wasMovedByOperator(found.moves);
 	return {
 		policy,
+		/** The operator wished for another time: until it begins all of the money goes back. */
+		movedByOperator,
 		possible: found.status === 'paid' && !used && found.startsAt > now,
-		percent: refundPercent(policy, found.startsAt, now)
+		percent:
+			movedByOperator && found.startsAt > now ? 100 : refundPercent(policy, found.startsAt, now)
 	};
 }
 
 /** A visitor gives up an order by its link: by the policy that it was sold under. */
 export async function cancelByVisitor(tx: TenantTx, orderId: string, now: Date): Promise<void> {
+	// Locked before it is read: a move at the same moment changes the terms.
+	await lockOrder(tx, orderId);
 	const found = await readOrder(tx, orderId);
 	if (!found) throw new Refusal('not_found', 'There is no such order.');
 	if (await cancelPendingOrder(tx, orderId, 'visitor', now)) return;
@@ -113,6 +125,7 @@ export async function cancelByBoxOffice(
 	now: Date
 ): Promise<void> {
 	demand(tx, 'orders.write');
+	await lockOrder(tx, orderId);
 	const found = await demandOrder(tx, orderId);
 	const terms = await cancellationTerms(tx, found, now);
 	const back = await cancelPaidOrder(

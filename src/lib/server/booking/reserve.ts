@@ -132,7 +132,7 @@ async function priceLines(
 }
 
 /** Holds that have lapsed give their places back at once, even when no worker runs just now. */
-async function releaseLapsedHolds(tx: TenantTx, slotId: string, now: Date): Promise<void> {
+export async function releaseLapsedHolds(tx: TenantTx, slotId: string, now: Date): Promise<void> {
 	// In the order of locks that every other writer uses: the orders, then their slot.
 	const lapsed = await tx.sql
 		.select({ id: order.id })
@@ -145,7 +145,7 @@ async function releaseLapsedHolds(tx: TenantTx, slotId: string, now: Date): Prom
 				lt(order.holdUntil, now)
 			)
 		)
-		.for('update', { skipLocked: true });
+		.for('no key update', { skipLocked: true });
 	if (lapsed.length === 0) return;
 	await tx.sql
 		.update(order)

@@ -81,13 +81,16 @@ export async function settleFreeOrder(tx: TenantTx, orderId: string, now: Date):
 	await completeOrder(tx, found, now);
 }
 
-/** Locks the order, so that of several that settle it at once only one does. */
+/**
+ * Locks the order, so that of several that settle it at once only one does. Others may still point at it:
+ * whoever holds a slot and notes down its orders must not wait for one who holds an order and wants the slot.
+ */
 export async function lockOrder(tx: TenantTx, orderId: string): Promise<Order | undefined> {
 	const [found] = await tx.sql
 		.select()
 		.from(order)
 		.where(and(eq(order.operatorId, tx.operatorId), eq(order.id, orderId)))
-		.for('update');
+		.for('no key update');
 	return found;
 }
 

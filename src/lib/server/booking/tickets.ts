@@ -1,4 +1,4 @@
-import { and, asc, eq } from 'drizzle-orm';
+import { and, asc, eq, ne } from 'drizzle-orm';
 import { orderLine, ticket } from '../db/schema';
 import type { TenantTx } from '../db/transaction';
 import { newTicketCode } from './codes';
@@ -25,8 +25,11 @@ export async function issueTickets(
 	);
 }
 
-/** An order's tickets with the name of their price category, in the order of its lines. */
-export function listTickets(tx: TenantTx, orderId: string) {
+/**
+ * An order's tickets with the name of their price category, in the order of its lines.
+ * @param moved those that gave way to tickets of another slot too
+ */
+export function listTickets(tx: TenantTx, orderId: string, { moved = false } = {}) {
 	return tx.sql
 		.select({
 			id: ticket.id,
@@ -37,6 +40,12 @@ export function listTickets(tx: TenantTx, orderId: string) {
 		})
 		.from(ticket)
 		.innerJoin(orderLine, eq(orderLine.id, ticket.orderLineId))
-		.where(and(eq(ticket.operatorId, tx.operatorId), eq(ticket.orderId, orderId)))
+		.where(
+			and(
+				eq(ticket.operatorId, tx.operatorId),
+				eq(ticket.orderId, orderId),
+				...(moved ? [] : [ne(ticket.status, 'moved')])
+			)
+		)
 		.orderBy(asc(orderLine.id), asc(ticket.id));
 }

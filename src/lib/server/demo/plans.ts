@@ -24,7 +24,8 @@ export const quarryPlan: Plan = {
 			to: [-14, 10],
 			bottom: 0.3,
 			top: 6.5,
-			dropDiameter: 420
+			dropDiameter: 420,
+			waterFlow: 38
 		},
 		{
 			name: 'North curtain',
@@ -32,7 +33,8 @@ export const quarryPlan: Plan = {
 			to: [8, 13],
 			bottom: 0.3,
 			top: 5.5,
-			dropDiameter: 260
+			dropDiameter: 260,
+			waterFlow: 31
 		}
 	],
 	walls: [{ name: 'Crane shed', from: [20, -30], to: [32, -18], bottom: 0, top: 9 }],

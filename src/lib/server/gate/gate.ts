@@ -2,7 +2,7 @@ import { and, asc, eq, gte, lte, sql } from 'drizzle-orm';
 import { addToTrail } from '../audit/trail';
 import { demand } from '../auth/rights';
 import { readTicketCode } from '../booking/codes';
-import { orderLine, site, slot, ticket, zone } from '../db/schema';
+import { order, orderLine, site, slot, ticket, zone } from '../db/schema';
 import type { TenantTx } from '../db/transaction';
 import { Refusal } from '../failures';
 
@@ -48,6 +48,15 @@ export type Admission =
 	| { answer: 'used'; name: string; usedAt: Date }
 	| {
 			answer: 'other_slot';
+			name: string;
+			startsAt: Date;
+			localDate: string;
+			zone: string;
+			timeZone: string;
+	  }
+	/** It was moved: a new ticket is for this slot. */
+	| {
+			answer: 'moved';
 			name: string;
 			startsAt: Date;
 			localDate: string;
@@ -104,19 +113,24 @@ export async function admit(
 	if (found.status === 'used' && found.usedAt) {
 		return { answer: 'used', name: found.name, usedAt: found.usedAt };
 	}
+	const { name, startsAt, localDate, zone: zoneName, timeZone } = found;
+	const there = { name, startsAt, localDate, zone: zoneName, timeZone };
+	if (found.status === 'moved' && found.orderStatus === 'paid')
+		return { answer: 'moved', ...there };
 	if (found.status !== 'valid') {
 		return { answer: 'void', calledOff: found.slotStatus === 'called_off' };
 	}
-	const { name, startsAt, localDate, zone: zoneName, timeZone } = found;
-	return { answer: 'other_slot', name, startsAt, localDate, zone: zoneName, timeZone };
+	return { answer: 'other_slot', ...there };
 }
 
+/** A ticket with the slot that its order stands in now: its own, or the one that it was moved to. */
 async function findTicket(tx: TenantTx, code: string) {
 	const [found] = await tx.sql
 		.select({
 			status: ticket.status,
 			usedAt: ticket.usedAt,
 			name: orderLine.name,
+			orderStatus: order.status,
 			slotStatus: slot.status,
 			startsAt: slot.startsAt,
 			localDate: slot.localDate,
@@ -125,7 +139,8 @@ async function findTicket(tx: TenantTx, code: string) {
 		})
 		.from(ticket)
 		.innerJoin(orderLine, eq(orderLine.id, ticket.orderLineId))
-		.innerJoin(slot, eq(slot.id, ticket.slotId))
+		.innerJoin(order, eq(order.id, ticket.orderId))
+		.innerJoin(slot, eq(slot.id, order.slotId))
 		.innerJoin(zone, eq(zone.id, slot.zoneId))
 		.innerJoin(site, eq(site.id, slot.siteId))
 		.where(and(eq(ticket.operatorId, tx.operatorId), eq(ticket.code, code)));

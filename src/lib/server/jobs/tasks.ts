@@ -1,5 +1,6 @@
 import type { JobHelpers } from 'graphile-worker';
 import { deleteExpired } from '../auth/housekeeping';
+import { moveSlotOrder } from '../booking/move-slot';
 import { endHold } from '../booking/settle';
 import { sendLetter } from '../mail/send';
 import { handlePaymentEvent } from '../payments/events';
@@ -19,6 +20,7 @@ export interface TaskPayloads {
 	send_refund: { operatorId: string; refundId: string };
 	end_hold: { operatorId: string; orderId: string };
 	call_off_order: { operatorId: string; orderId: string; weatherCallId: string };
+	move_slot_order: { operatorId: string; orderId: string; slotMoveId: string };
 	compute_windows: { operatorId: string; computationId: string };
 	read_forecast: { operatorId: string; siteId: string };
 	read_forecasts: Record<string, never>;
@@ -42,6 +44,7 @@ export const handlers: { [Task in keyof TaskPayloads]: Handler<TaskPayloads[Task
 	send_refund: sendAskedRefund,
 	end_hold: endHold,
 	call_off_order: callOffOrder,
+	move_slot_order: moveSlotOrder,
 	compute_windows: computeWindows,
 	read_forecast: readForecast,
 	read_forecasts: readForecasts,

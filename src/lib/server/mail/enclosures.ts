@@ -12,7 +12,7 @@ export async function drawUp(tx: TenantTx, enclosures: Enclosure[]): Promise<Att
 	for (const enclosure of enclosures) {
 		if (enclosure.kind === 'document')
 			parts.push(...(await documentPart(tx, enclosure.documentId)));
-		else parts.push(...(await ticketParts(tx, enclosure.orderId)));
+		else parts.push(...(await ticketParts(tx, enclosure)));
 	}
 	return parts;
 }
@@ -29,9 +29,14 @@ async function documentPart(tx: TenantTx, id: string): Promise<Attachment[]> {
 	];
 }
 
-async function ticketParts(tx: TenantTx, orderId: string): Promise<Attachment[]> {
+async function ticketParts(
+	tx: TenantTx,
+	{ orderId, ticketIds }: { orderId: string; ticketIds?: string[] }
+): Promise<Attachment[]> {
 	const parts: Attachment[] = [];
-	for (const ticket of await listTickets(tx, orderId)) {
+	// A letter that waited long shows the pictures of the codes that stand in it, whatever came after.
+	const tickets = await listTickets(tx, orderId, { moved: true });
+	for (const ticket of tickets.filter(({ id }) => ticketIds?.includes(id) ?? true)) {
 		parts.push({
 			filename: `ticket-${ticket.code}.png`,
 			contentType: 'image/png',

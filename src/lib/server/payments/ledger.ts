@@ -1,5 +1,5 @@
 import { and, eq, inArray, sql } from 'drizzle-orm';
-import { ledgerEntry, payment, refund } from '../db/schema';
+import { ledgerEntry, order, payment, refund } from '../db/schema';
 import { inTenant, type TenantTx } from '../db/transaction';
 import { addJob } from '../jobs/add';
 import type { TaskPayloads } from '../jobs/tasks';
@@ -43,19 +43,48 @@ async function addPage(tx: TenantTx, page: BalanceTransaction[]): Promise<number
 		.where(and(eq(refund.operatorId, tx.operatorId), inArray(refund.providerRefundId, sources)));
 	const orderOf = new Map(payments.map((row) => [row.source, row.orderId]));
 	const refundOf = new Map(refunds.map((row) => [row.source, row]));
+	// Booked before its id has reached us: what it carries says whose it is, if that is ours at all.
+	const own = await ourOwn(tx, page);
+	const orderBehind = ({ sourceId, named }: BalanceTransaction) =>
+		(sourceId && (orderOf.get(sourceId) ?? refundOf.get(sourceId)?.orderId)) ||
+		(named.orderId && own.orders.has(named.orderId) ? named.orderId : null);
+	const refundBehind = ({ sourceId, named }: BalanceTransaction) =>
+		(sourceId && refundOf.get(sourceId)?.refundId) ||
+		(named.refundId && own.refunds.has(named.refundId) ? named.refundId : null);
 	const added = await tx.sql
 		.insert(ledgerEntry)
 		.values(
-			page.map(({ sourceId, ...row }) => ({
-				operatorId: tx.operatorId,
-				...row,
-				orderId: (sourceId && (orderOf.get(sourceId) ?? refundOf.get(sourceId)?.orderId)) || null,
-				refundId: (sourceId && refundOf.get(sourceId)?.refundId) || null
-			}))
+			page.map((row) => {
+				const { sourceId: _, named: __, ...entry } = row;
+				return {
+					operatorId: tx.operatorId,
+					...entry,
+					orderId: orderBehind(row),
+					refundId: refundBehind(row)
+				};
+			})
 		)
 		.onConflictDoNothing({ target: [ledgerEntry.operatorId, ledgerEntry.balanceTransactionId] })
 		.returning({ id: ledgerEntry.id });
 	return added.length;
+}
+
+/** Which of the orders and refunds that the rows name there are. */
+async function ourOwn(tx: TenantTx, page: BalanceTransaction[]) {
+	const orderIds = page.flatMap(({ named }) => named.orderId ?? []);
+	const refundIds = page.flatMap(({ named }) => named.refundId ?? []);
+	const orders = await tx.sql
+		.select({ id: order.id })
+		.from(order)
+		.where(and(eq(order.operatorId, tx.operatorId), inArray(order.id, orderIds)));
+	const refunds = await tx.sql
+		.select({ id: refund.id })
+		.from(refund)
+		.where(and(eq(refund.operatorId, tx.operatorId), inArray(refund.id, refundIds)));
+	return {
+		orders: new Set(orders.map(({ id }) => id)),
+		refunds: new Set(refunds.map(({ id }) => id))
+	};
 }
 
 /** What the ledger says the account holds, by currency, in minor units. */

@@ -1,10 +1,22 @@
-import { and, eq, gt, inArray, ne, or } from 'drizzle-orm';
+import { and, eq, gt, inArray, ne, or, sql } from 'drizzle-orm';
 import { createHash } from 'node:crypto';
 import { localClock } from '../../schedule';
 import { addToTrail } from '../audit/trail';
 import { demand } from '../auth/rights';
+import { lockSlots } from '../booking/move';
 import { violates } from '../db/errors';
-import { order, programme, slot, slotForecast, weatherCallSlot, zone } from '../db/schema';
+import {
+	keptSlot,
+	order,
+	orderMove,
+	programme,
+	slot,
+	slotForecast,
+	slotMove,
+	ticket,
+	weatherCallSlot,
+	zone
+} from '../db/schema';
 import type { TenantTx } from '../db/transaction';
 import { Refusal } from '../failures';
 import { sellingObstacles } from '../payments/accounts';
@@ -108,6 +120,11 @@ export async function publishProgramme(
 	if (present !== digest) {
 		throw new Refusal('conflict', 'Something has changed since you looked. See what it does now.');
 	}
+	// At once and in order, as everybody who needs several slots does.
+	await lockSlots(
+		tx,
+		[...difference.removed, ...difference.kept.map(({ slot }) => slot)].map(({ id }) => id)
+	);
 	try {
 		await removeSlots(tx, difference);
 		await keepSlots(tx, difference);
@@ -135,12 +152,9 @@ export async function publishProgramme(
 async function removeSlots(tx: TenantTx, { removed }: Difference): Promise<void> {
 	if (removed.length === 0) return;
 	const ids = removed.map(({ id }) => id);
-	const spoken = await tx.sql
-		.selectDistinct({ id: order.slotId })
-		.from(order)
-		.where(and(eq(order.operatorId, tx.operatorId), inArray(order.slotId, ids)));
-	const named = new Set(spoken.map(({ id }) => id));
-	// Somebody held places and let them lapse: the order speaks of the slot, which stays as called off.
+	const named = await spokenOf(tx, ids);
+	// Somebody held places and let them lapse, or was moved: that speaks of the slot, which stays as
+	// called off.
 	const silent = ids.filter((id) => !named.has(id));
 	if (silent.length > 0) {
 		await tx.sql.delete(slotForecast).where(inArray(slotForecast.slotId, silent));
@@ -158,6 +172,29 @@ async function removeSlots(tx: TenantTx, { removed }: Difference): Promise<void>
 			.returning({ id: slot.id });
 		demandAll(off.length, named.size);
 	}
+}
+
+const speaking = [
+	order.slotId,
+	ticket.slotId,
+	orderMove.fromSlotId,
+	orderMove.toSlotId,
+	slotMove.fromSlotId,
+	slotMove.toSlotId,
+	keptSlot.slotId
+];
+
+/** Slots that orders, moves or decisions speak of. */
+async function spokenOf(tx: TenantTx, slotIds: string[]): Promise<Set<string>> {
+	const said = new Set<string>();
+	for (const column of speaking) {
+		const rows = await tx.sql
+			.selectDistinct({ id: sql<string>`${column}` })
+			.from(column.table)
+			.where(and(sql`operator_id = ${tx.operatorId}`, inArray(column, slotIds)));
+		for (const { id } of rows) said.add(id);
+	}
+	return said;
 }
 
 async function demandLivePlan(tx: TenantTx, siteId: string) {

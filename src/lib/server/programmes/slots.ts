@@ -1,6 +1,8 @@
 import { and, asc, eq, gte, lte, ne } from 'drizzle-orm';
 import { addToTrail } from '../audit/trail';
 import { demand } from '../auth/rights';
+import { lockSlots } from '../booking/move';
+import { movesUnderWay } from '../booking/move-slot';
 import { programme, site, slot, slotForecast, zone } from '../db/schema';
 import type { TenantTx } from '../db/transaction';
 import { Refusal } from '../failures';
@@ -56,6 +58,13 @@ export type ListedSlot = Awaited<ReturnType<typeof listSlots>>[number];
 export async function setSlotPaused(tx: TenantTx, slotId: string, paused: boolean): Promise<void> {
 	demand(tx, 'programmes.write');
 	const status = paused ? 'paused' : 'open';
+	await lockSlots(tx, [slotId]);
+	if (!paused && (await movesUnderWay(tx, { slotIds: [slotId] })).size > 0) {
+		throw new Refusal(
+			'conflict',
+			'The slot is being moved: it is not for sale until that is done.'
+		);
+	}
 	const changed = await tx.sql
 		.update(slot)
 		.set({ status })

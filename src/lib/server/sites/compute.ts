@@ -1,5 +1,6 @@
 import { and, desc, eq, gte, lte, sql } from 'drizzle-orm';
 import { createHash } from 'node:crypto';
+import { canonicalJson } from '../../canonical';
 import { createSite as createOpticsSite, windowsInPieces } from '../../optics';
 import { addDays, localDayRange } from '../../schedule';
 import { demand } from '../auth/rights';
@@ -17,15 +18,6 @@ export const engineVersion = '1';
 const origin = { actor: { kind: 'worker', name: 'windows' } } as const;
 
 export type Computation = typeof computation.$inferSelect;
-
-/** Object keys in order, so that a plan stored and read back gives the same text. */
-function canonical(value: unknown): string {
-	return JSON.stringify(value, (_, inner: unknown) =>
-		inner && typeof inner === 'object' && !Array.isArray(inner)
-			? Object.fromEntries(Object.entries(inner).sort(([a], [b]) => (a < b ? -1 : 1)))
-			: inner
-	);
-}
 
 /**
  * Asks for the windows of the live plan over a range of local dates, both counted. The same plan, range
@@ -48,7 +40,7 @@ export async function askForWindows(
 		throw error;
 	}
 	const inputHash = createHash('sha256')
-		.update(canonical({ engineVersion, plan: live.body, ...range }))
+		.update(canonicalJson({ engineVersion, plan: live.body, ...range }))
 		.digest('hex');
 	const [made] = await tx.sql
 		.insert(computation)
@@ -237,19 +229,6 @@ export async function findComputation(
 			gte(computation.toDate, to)
 		),
 		orderBy: desc(computation.createdAt)
-	});
-	return found ?? null;
-}
-
-/** The newest finished computation of a plan version, of the longest range; null when there is none. */
-export async function newestComputation(tx: TenantTx, planId: string): Promise<Computation | null> {
-	const found = await tx.sql.query.computation.findFirst({
-		where: and(
-			eq(computation.operatorId, tx.operatorId),
-			eq(computation.planId, planId),
-			eq(computation.state, 'done')
-		),
-		orderBy: [desc(computation.daysTotal), desc(computation.createdAt)]
 	});
 	return found ?? null;
 }

@@ -1,5 +1,6 @@
 import { and, eq } from 'drizzle-orm';
 import sharp from 'sharp';
+import { mostPictureBytes } from '../../schemas/picture';
 import { addToTrail } from '../audit/trail';
 import { demand } from '../auth/rights';
 import { picture, site } from '../db/schema';
@@ -7,20 +8,27 @@ import type { TenantTx } from '../db/transaction';
 import { Refusal } from '../failures';
 import { demandSite } from './sites';
 
-/** Largest upload, bytes. */
-export const mostPictureBytes = 10 * 1024 * 1024;
 /** Largest picture that is decoded, pixels. */
 const mostPixels = 60_000_000;
-const edgePx = 1600;
+/** Edges of a picture that visitors see. */
+const usualEdges = { widthPx: 1600, heightPx: 1600 };
+
+/** A picture as it is kept: WebP, without metadata. */
+export interface ReadPicture {
+	content: Buffer;
+	widthPx: number;
+	heightPx: number;
+}
 
 /**
- * Re-encodes an uploaded picture: turned as its metadata says, at most 1600 pixels on an edge, WebP,
- * without any metadata. What it claims to be does not count; what it is does.
+ * Re-encodes an uploaded picture: turned as its metadata says, made to fit the edges, WebP, without any
+ * metadata. What it claims to be does not count; what it is does.
  * @throws Refusal that names what is wrong
  */
 export async function readPicture(
-	upload: Uint8Array
-): Promise<{ content: Buffer; widthPx: number; heightPx: number }> {
+	upload: Uint8Array,
+	{ widthPx: width, heightPx: height } = usualEdges
+): Promise<ReadPicture> {
 	if (upload.byteLength === 0) throw new Refusal('invalid', 'Choose a picture.', 'picture');
 	if (upload.byteLength > mostPictureBytes) {
 		throw new Refusal('invalid', 'A picture has at most 10 MB.', 'picture');
@@ -33,7 +41,7 @@ export async function readPicture(
 		}
 		const { data, info } = await image
 			.rotate()
-			.resize({ width: edgePx, height: edgePx, fit: 'inside', withoutEnlargement: true })
+			.resize({ width, height, fit: 'inside', withoutEnlargement: true })
 			.webp({ quality: 80 })
 			.toBuffer({ resolveWithObject: true });
 		return { content: data, widthPx: info.width, heightPx: info.height };
@@ -54,7 +62,7 @@ export async function readPicture(
 export async function changePicture(
 	tx: TenantTx,
 	slug: string,
-	read: { content: Buffer; widthPx: number; heightPx: number },
+	read: ReadPicture,
 	alt: string
 ): Promise<void> {
 	demand(tx, 'sites.write');
@@ -76,10 +84,12 @@ export async function changePicture(
 	});
 }
 
-/** A picture as it is served; null when there is none of that name. */
+/** A site's picture as visitors see it; null when no site has one of that name. */
 export async function findPicture(tx: TenantTx, id: string) {
-	const found = await tx.sql.query.picture.findFirst({
-		where: and(eq(picture.operatorId, tx.operatorId), eq(picture.id, id))
-	});
-	return found ?? null;
+	const [found] = await tx.sql
+		.select({ picture })
+		.from(picture)
+		.innerJoin(site, eq(site.pictureId, picture.id))
+		.where(and(eq(picture.operatorId, tx.operatorId), eq(picture.id, id)));
+	return found?.picture ?? null;
 }

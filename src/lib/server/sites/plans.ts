@@ -1,8 +1,9 @@
 import { and, desc, eq, max } from 'drizzle-orm';
+import { mergePlans, type Merge } from '../../plan-merge/merge';
 import { readPlan, type Plan } from '../../schemas/plan';
 import { addToTrail } from '../audit/trail';
 import { demand } from '../auth/rights';
-import { plan, site, zone } from '../db/schema';
+import { plan, site, trail, zone } from '../db/schema';
 import type { TenantTx } from '../db/transaction';
 import { Refusal } from '../failures';
 import { demandSite, type Site } from './sites';
@@ -96,7 +97,7 @@ export async function addPlan(tx: TenantTx, slug: string, body: Plan | null): Pr
 	demand(tx, 'sites.write');
 	const at = await demandSite(tx, slug);
 	// One at a time: the site's row is the lock for the next number.
-	await tx.sql.select({ id: site.id }).from(site).where(eq(site.id, at.id)).for('update');
+	await tx.sql.select({ id: site.id }).from(site).where(eq(site.id, at.id)).for('no key update');
 	const [last] = await tx.sql
 		.select({ version: max(plan.version) })
 		.from(plan)
@@ -146,7 +147,7 @@ export async function savePlan(
 	if (saved.length === 0) {
 		throw new Refusal(
 			'conflict',
-			'Somebody else has saved this version since you opened it. Save yours as a new version, or open theirs.'
+			`${await lastEditor(tx, found.id)} has saved this version since you opened it. Bring the two together, or save yours as a new version.`
 		);
 	}
 	await addToTrail(tx, {
@@ -157,27 +158,66 @@ export async function savePlan(
 	});
 }
 
+/** Who saved a version last, by the name in the trail. */
+async function lastEditor(tx: TenantTx, planId: string): Promise<string> {
+	const last = await tx.sql.query.trail.findFirst({
+		columns: { actorName: true },
+		where: and(
+			eq(trail.operatorId, tx.operatorId),
+			eq(trail.action, 'plan.saved'),
+			eq(trail.subjectId, planId)
+		),
+		orderBy: desc(trail.id)
+	});
+	return last?.actorName ?? 'Somebody else';
+}
+
 /**
- * Makes a version the live one; the one before is retired. Slots stay as they are: those that no
- * longer lie in a window are shown when the programme is published again.
+ * Brings what an editor made together with what was saved meanwhile. Nothing is saved: the editor looks
+ * at the outcome first.
+ * @param base what the editor began from, as the editor has it
+ * @returns the merged plan, with what was saved and its revision, from which the editor now goes on
+ * @throws Refusal when the version was live and does not change
  */
-export async function makeLive(tx: TenantTx, slug: string, version: number): Promise<void> {
+export async function mergePlan(
+	tx: TenantTx,
+	{ slug, version, base, mine }: { slug: string; version: number; base: Plan; mine: Plan }
+): Promise<Merge & { theirs: Plan; revision: number }> {
 	demand(tx, 'sites.write');
 	const at = await demandSite(tx, slug);
-	await tx.sql.select({ id: site.id }).from(site).where(eq(site.id, at.id)).for('update');
 	const found = await demandPlan(tx, at.id, version);
-	if (found.state === 'live') return;
-	const { body } = found;
-	if (body.zones.length === 0) throw new Refusal('conflict', 'The plan has no zone to stand in.');
+	if (found.liveSince) {
+		throw new Refusal('conflict', 'A version that was live does not change. Copy it to a new one.');
+	}
+	const merge = mergePlans({ base, mine: withPlace(mine, at), theirs: found.body });
+	return { ...merge, theirs: found.body, revision: found.revision };
+}
+
+/** Why a plan can not go live at its site, in words; null when it can. */
+export function liveObstacle(at: Site, body: Plan): string | null {
+	if (body.zones.length === 0) return 'The plan has no zone to stand in.';
 	if (!body.curtains.some((curtain) => curtain.enabled ?? true)) {
-		throw new Refusal('conflict', 'The plan has no curtain that is switched on.');
+		return 'The plan has no curtain that is switched on.';
 	}
 	const moved = [at.latitudeDeg, at.longitudeDeg, at.elevationM, at.timeZone].some(
 		(value, i) => value !== [body.latitude, body.longitude, body.elevation, body.timeZone][i]
 	);
-	if (moved) {
-		throw new Refusal('conflict', 'The site’s place was changed since. Save the plan again first.');
-	}
+	return moved ? 'The site’s place was changed since. Save the plan again first.' : null;
+}
+
+/**
+ * Makes a version the live one; the one before is retired. Slots stay as they are: sold ones that no
+ * longer lie in a window are listed as conflicts until a person decides about each.
+ */
+export async function makeLive(tx: TenantTx, slug: string, version: number): Promise<void> {
+	demand(tx, 'sites.write');
+	const at = await demandSite(tx, slug);
+	await tx.sql.select({ id: site.id }).from(site).where(eq(site.id, at.id)).for('no key update');
+	const found = await demandPlan(tx, at.id, version);
+	if (found.state === 'live') return;
+	const { body } = found;
+	const obstacle = liveObstacle(at, body);
+	if (obstacle) throw new Refusal('conflict', obstacle);
 	await tx.sql
 		.update(plan)
 		.set({ state: 'retired' })

@@ -1,9 +1,10 @@
 import { bowRadiusDeg } from '../../optics';
-import { formatDate, formatMinutes } from '../../format';
-import { groupBy } from '../../group-by';
+import { formatMinutes, formatMonth } from '../../format';
+import { flowWords } from '../../mist/flow';
+import { monthsOf } from '../../schedule';
 import type { Plan } from '../../schemas/plan';
 import { drawPdf, paper } from '../pdf';
-import type { StoredWindow } from './compute';
+import type { PlanYear } from './plan-year';
 
 /** What the printed sheet of a plan version says. */
 export interface SiteSheet {
@@ -13,8 +14,8 @@ export interface SiteSheet {
 	state: 'draft' | 'live' | 'retired';
 	changedAt: Date;
 	plan: Plan;
-	/** Stored windows of the version, and the local dates that they cover; null when none are stored. */
-	season: { from: string; to: string; windows: StoredWindow[] } | null;
+	/** Null when it is too large to be computed while somebody waits. */
+	year: PlanYear | null;
 }
 
 const { ink, quiet, hairline, act } = paper;
@@ -39,7 +40,7 @@ export function sheetPdf(sheet: SiteSheet): Promise<Buffer> {
 		);
 		drawPlan(pdf, sheet.plan);
 		drawMeasures(pdf, sheet.plan);
-		drawSeason(pdf, sheet);
+		drawYear(pdf, sheet);
 		drawCautions(pdf);
 	});
 }
@@ -156,8 +157,18 @@ function drawMeasures(pdf: PDFKit.PDFDocument, plan: Plan): void {
 	heading(pdf, 'Curtains');
 	table(
 		pdf,
-		['Name', 'From x, y', 'To x, y', 'Length', 'Bearing', 'Bottom to top', 'Drops', 'Bow radius'],
-		[84, 62, 62, 48, 46, 76, 50, 55],
+		[
+			'Name',
+			'From x, y',
+			'To x, y',
+			'Length',
+			'Bearing',
+			'Bottom to top',
+			'Drops',
+			'Bow radius',
+			'Flow'
+		],
+		[80, 56, 56, 44, 42, 70, 44, 46, 45],
 		plan.curtains.map((one, i) => [
 			`${one.name ?? `Curtain ${i + 1}`}${(one.enabled ?? true) ? '' : ' (off)'}`,
 			corner(one.from),
@@ -166,9 +177,12 @@ function drawMeasures(pdf: PDFKit.PDFDocument, plan: Plan): void {
 			`${Math.round(bearingDeg(one.from, one.to))}°`,
 			`${one.bottom} to ${metres(one.top)}`,
 			`${one.dropDiameter} µm`,
-			`${bowRadiusDeg({ dropDiameterUm: one.dropDiameter, waterTemperatureC: one.waterTemperature }).toFixed(2)}°`
+			`${bowRadiusDeg({ dropDiameterUm: one.dropDiameter, waterTemperatureC: one.waterTemperature }).toFixed(2)}°`,
+			one.waterFlow === undefined ? 'not given' : `${one.waterFlow} l/min`
 		])
 	);
+	const flow = flowWords(plan);
+	if (flow) pdf.fillColor(ink).text(flow, left, pdf.y + 4, { width: right - left });
 	if (plan.walls && plan.walls.length > 0) {
 		heading(pdf, 'Walls');
 		table(
@@ -198,33 +212,41 @@ function drawMeasures(pdf: PDFKit.PDFDocument, plan: Plan): void {
 	);
 }
 
-function drawSeason(pdf: PDFKit.PDFDocument, { season, plan }: SiteSheet): void {
-	heading(pdf, 'Bow in view');
+function drawYear(pdf: PDFKit.PDFDocument, { year, plan }: SiteSheet): void {
+	heading(pdf, year ? `Bow in view, ${year.year}` : 'Bow in view');
 	const { minimumArc, minimumShare, minimumSunAltitude } = plan.rule;
 	pdf.font('text').fontSize(8).fillColor(quiet);
 	pdf.text(
-		`Counted when at least ${minimumShare * 100} % of a zone sees ${minimumArc}° of arc or more and the sun stands ${minimumSunAltitude}° or higher.`
+		`Counted when at least ${minimumShare * 100} % of a zone sees ${minimumArc}° of arc or more and the sun stands ${minimumSunAltitude}° or higher; whatever the weather and the opening hours.`
 	);
-	if (!season) {
-		pdf.text('No windows are stored for this version.');
+	if (!year) {
+		pdf.text('The year of this plan takes long to compute: see its year sheet.');
 		return;
 	}
-	pdf.text(`Stored windows of ${formatDate(season.from)} to ${formatDate(season.to)}.`);
-	const minutes = (rows: StoredWindow[]) =>
-		rows.reduce((sum, row) => sum + row.endsAt.getTime() - row.startsAt.getTime(), 0) / 60_000;
+	type Windows = PlanYear['zones'][number]['windows'];
+	const row = (name: string, span: string, windows: Windows) => [
+		name,
+		span,
+		String(new Set(windows.map(({ date }) => date)).size),
+		formatMinutes(windows.reduce((sum, one) => sum + one.endMs - one.startMs, 0) / 60_000),
+		windows.length === 0
+			? '–'
+			: `${Math.round(Math.max(...windows.map(({ peakArcDeg }) => peakArcDeg)))}°`
+	];
 	table(
 		pdf,
 		['Zone', 'Month', 'Days with bow', 'Bow', 'Greatest arc'],
 		[140, 90, 90, 90, 73],
-		groupBy(season.windows, (row) => `${row.zone}\n${row.localDate.slice(0, 7)}`).map(
-			([, rows]) => [
-				rows[0]!.zone,
-				rows[0]!.localDate.slice(0, 7),
-				String(new Set(rows.map(({ localDate }) => localDate)).size),
-				formatMinutes(minutes(rows)),
-				`${Math.round(Math.max(...rows.map(({ peakArcDeg }) => peakArcDeg)))}°`
-			]
-		)
+		year.zones.flatMap(({ zone, windows }) => [
+			...monthsOf(year.year).map((month) =>
+				row(
+					zone,
+					formatMonth(month),
+					windows.filter(({ date }) => date.startsWith(month))
+				)
+			),
+			row(zone, 'Year', windows)
+		])
 	);
 }
 

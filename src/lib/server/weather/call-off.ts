@@ -1,8 +1,9 @@
-import { and, asc, desc, eq, inArray, sql } from 'drizzle-orm';
+import { and, asc, desc, eq, gte, inArray, or, sql } from 'drizzle-orm';
 import { addToTrail } from '../audit/trail';
 import { demand } from '../auth/rights';
 import {
 	order,
+	orderMove,
 	payment,
 	refund,
 	site,
@@ -16,6 +17,8 @@ import { Refusal } from '../failures';
 import { addJob } from '../jobs/add';
 import type { TaskPayloads } from '../jobs/tasks';
 import { cancelPaidOrder, cancelPendingOrder } from '../booking/cancel';
+import { lockSlots } from '../booking/move';
+import { lockOrder } from '../booking/settle';
 
 const origin = { actor: { kind: 'worker', name: 'weather calls' } } as const;
 
@@ -89,6 +92,7 @@ export async function callOff(
 	if (slots.some((one) => one.endsAt <= now)) {
 		throw new Refusal('conflict', 'A slot of these is over.');
 	}
+	await lockSlots(tx, slotIds);
 	const called = await tx.sql
 		.update(slot)
 		.set({ status: 'called_off' })
@@ -151,6 +155,9 @@ export async function callOffOrder({
 		});
 		if (!call) return;
 		const now = new Date();
+		const found = await lockOrder(tx, orderId);
+		// Moved meanwhile to a slot that takes place: it keeps its tickets there.
+		if (!found || !(await isCalledOff(tx, weatherCallId, found.slotId))) return;
 		// A pending one first: it may become paid only before it is looked at, never after.
 		if (await cancelPendingOrder(tx, orderId, 'called_off', now)) return;
 		await cancelPaidOrder(
@@ -160,6 +167,18 @@ export async function callOffOrder({
 			now
 		);
 	});
+}
+
+async function isCalledOff(tx: TenantTx, weatherCallId: string, slotId: string): Promise<boolean> {
+	const found = await tx.sql.query.weatherCallSlot.findFirst({
+		columns: { id: true },
+		where: and(
+			eq(weatherCallSlot.operatorId, tx.operatorId),
+			eq(weatherCallSlot.weatherCallId, weatherCallId),
+			eq(weatherCallSlot.slotId, slotId)
+		)
+	});
+	return found !== undefined;
 }
 
 /** A weather call with its slots. @throws Refusal (not_found) */
@@ -216,10 +235,13 @@ export function listCalls(tx: TenantTx, most = 20) {
 }
 
 /** How far a called-off order is. */
-export type CallOffState = 'waiting' | 'refund_asked' | 'refund_sent' | 'done' | 'failed';
+export type CallOffState = 'waiting' | 'moved' | 'refund_asked' | 'refund_sent' | 'done' | 'failed';
 
-/** Row by row, every order of the called-off slots that was or is paid, and what became of its money. */
-export async function callOffProgress(tx: TenantTx, slotIds: string[]) {
+/**
+ * Row by row, every order of the called-off slots that was or is paid, and what became of its money.
+ * @param since orders that were moved elsewhere from this instant on are told too
+ */
+export async function callOffProgress(tx: TenantTx, slotIds: string[], since?: Date) {
 	if (slotIds.length === 0) return [];
 	const rows = await tx.sql
 		.select({
@@ -227,6 +249,7 @@ export async function callOffProgress(tx: TenantTx, slotIds: string[]) {
 			reference: order.reference,
 			visitorName: order.visitorName,
 			places: order.places,
+			slotId: order.slotId,
 			status: order.status,
 			closedReason: order.closedReason,
 			currency: order.currency,
@@ -235,7 +258,15 @@ export async function callOffProgress(tx: TenantTx, slotIds: string[]) {
 		})
 		.from(order)
 		.leftJoin(payment, eq(payment.orderId, order.id))
-		.where(and(eq(order.operatorId, tx.operatorId), inArray(order.slotId, slotIds)))
+		.where(
+			and(
+				eq(order.operatorId, tx.operatorId),
+				or(
+					inArray(order.slotId, slotIds),
+					...(since ? [inArray(order.id, movedFrom(tx, slotIds, since))] : [])
+				)
+			)
+		)
 		.orderBy(asc(order.createdAt));
 	const refunds = await tx.sql.query.refund.findMany({
 		where: and(
@@ -249,12 +280,34 @@ export async function callOffProgress(tx: TenantTx, slotIds: string[]) {
 	});
 	return rows
 		.filter(
-			(row) => row.status === 'paid' || row.paidMinor !== null || row.closedReason === 'called_off'
+			(row) =>
+				!slotIds.includes(row.slotId) ||
+				row.status === 'paid' ||
+				row.paidMinor !== null ||
+				row.closedReason === 'called_off'
 		)
 		.map((row) => {
 			const last = refunds.filter(({ orderId }) => orderId === row.orderId).at(-1);
-			return { ...row, refund: last ?? null, state: stateOf(row, last) };
+			const moved = !slotIds.includes(row.slotId);
+			return {
+				...row,
+				refund: moved ? null : (last ?? null),
+				state: moved ? ('moved' as const) : stateOf(row, last)
+			};
 		});
+}
+
+function movedFrom(tx: TenantTx, slotIds: string[], since: Date) {
+	return tx.sql
+		.select({ id: orderMove.orderId })
+		.from(orderMove)
+		.where(
+			and(
+				eq(orderMove.operatorId, tx.operatorId),
+				inArray(orderMove.fromSlotId, slotIds),
+				gte(orderMove.createdAt, since)
+			)
+		);
 }
 
 function stateOf(

@@ -3,17 +3,30 @@ import { dayBand } from '$lib/day-band';
 import { groupBy } from '$lib/group-by';
 import { localClock } from '$lib/schedule';
 import { mayRole } from '$lib/server/auth/rights';
-import { inDesk } from '$lib/server/http';
+import { deskOrigin, inDesk } from '$lib/server/http';
 import { failedRefunds } from '$lib/server/payments/refunds';
 import { listSlots, type ListedSlot } from '$lib/server/programmes/slots';
 import { windowsOfSite } from '$lib/server/sites/compute';
+import { countUndecided } from '$lib/server/sites/conflicts';
 import { listSites } from '$lib/server/sites/sites';
-import type { PageServerLoad } from './$types';
+import type { PageServerLoad, PageServerLoadEvent } from './$types';
 
 const dayMs = 86_400_000;
 
 /** The first screen answers what its role came with. */
-export const load: PageServerLoad = (event) =>
+export const load: PageServerLoad = async (event) => {
+	const found = await readDay(event);
+	const outside: { site: string; slug: string; slots: number }[] = [];
+	if (mayRole(event.locals.membership!.role, 'conflicts.decide')) {
+		for (const { site } of found.days) {
+			const slots = await countUndecided(deskOrigin(event), site.slug, new Date());
+			if (slots > 0) outside.push({ site: site.name, slug: site.slug, slots });
+		}
+	}
+	return { ...found, outside };
+};
+
+const readDay = (event: PageServerLoadEvent) =>
 	inDesk(event, async (tx) => {
 		const role = event.locals.membership!.role;
 		const now = new Date();

@@ -8,5 +8,7 @@ export * from './water';
 export * from './programmes';
 export * from './weather';
 export * from './orders';
+export * from './panoramas';
 export * from './payments';
+export * from './moves';
 export * from './invoicing';

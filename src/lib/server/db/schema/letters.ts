@@ -6,8 +6,8 @@ import { operator } from './operators';
 export type Enclosure =
 	/** A numbered document as PDF. */
 	| { kind: 'document'; documentId: string }
-	/** The QR pictures of an order's tickets, shown in the letter, and the calendar entry. */
-	| { kind: 'tickets'; orderId: string };
+	/** The QR pictures of the tickets that the letter shows, and the calendar entry of their order. */
+	| { kind: 'tickets'; orderId: string; ticketIds?: string[] };
 
 /**
  * The outbox: a letter is written in the transaction that causes it and sent by a job afterwards.

@@ -1,3 +1,5 @@
+import type Stripe from 'stripe';
+import { isUuid } from '../../../ids';
 import { ask, service } from './client';
 
 export interface BalanceTransaction {
@@ -9,6 +11,8 @@ export interface BalanceTransaction {
 	currency: string;
 	/** The charge or refund behind it. */
 	sourceId: string | null;
+	/** Our own ids, as that charge or refund carries them; whoever has the account can change them. */
+	named: { orderId: string | null; refundId: string | null };
 	bookedAt: Date;
 }
 
@@ -20,7 +24,12 @@ export async function* balanceTransactions(
 	for (;;) {
 		const page = await ask(
 			service().balanceTransactions.list(
-				{ limit: 100, ...(after ? { starting_after: after } : {}) },
+				{
+					limit: 100,
+					// What lies behind a row names our order even before we know its id.
+					expand: ['data.source'],
+					...(after ? { starting_after: after } : {})
+				},
 				{ stripeAccount: accountId }
 			)
 		);
@@ -33,11 +42,22 @@ export async function* balanceTransactions(
 			netMinor: row.net,
 			currency: row.currency.toUpperCase(),
 			sourceId: typeof row.source === 'string' ? row.source : (row.source?.id ?? null),
+			named: namedBy(row.source),
 			bookedAt: new Date(row.created * 1000)
 		}));
 		if (!page.has_more) return;
 		after = page.data.at(-1)!.id;
 	}
+}
+
+function namedBy(source: Stripe.BalanceTransaction['source']): BalanceTransaction['named'] {
+	const metadata =
+		typeof source === 'object' && source && 'metadata' in source ? source.metadata : null;
+	const id = (name: string) => {
+		const value = metadata?.[name];
+		return value && isUuid(value) ? value : null;
+	};
+	return { orderId: id('orderId'), refundId: id('refundId') };
 }
 
 /** What the service says an account holds, available and pending together, by currency. */

@@ -5,9 +5,10 @@ import { siteSchema } from '$lib/schemas/site';
 import { readPlan } from '$lib/schemas/plan';
 import { demand } from '$lib/server/auth/rights';
 import { Refusal } from '$lib/server/failures';
-import { emptyForm, handleForm, inDesk, orError } from '$lib/server/http';
+import { deskOrigin, emptyForm, handleForm, inDesk, orError } from '$lib/server/http';
 import { listProgrammes } from '$lib/server/programmes/programmes';
 import { listComputations } from '$lib/server/sites/compute';
+import { countUndecided } from '$lib/server/sites/conflicts';
 import { changePicture, readPicture } from '$lib/server/sites/pictures';
 import { addPlan, listPlans } from '$lib/server/sites/plans';
 import { waterWarnings } from '$lib/server/sites/water';
@@ -15,6 +16,7 @@ import { changeSite, demandSite, wasEverLive } from '$lib/server/sites/sites';
 import type { Actions, PageServerLoad } from './$types';
 
 export const load: PageServerLoad = async (event) => {
+	const conflicts = await orError(countUndecided(deskOrigin(event), event.params.site, new Date()));
 	const { site, ...rest } = await orError(
 		inDesk(event, async (tx) => {
 			demand(tx, 'sites.write');
@@ -35,6 +37,7 @@ export const load: PageServerLoad = async (event) => {
 	);
 	return {
 		...rest,
+		conflicts,
 		site: { slug: site.slug, name: site.name, open: site.open, pictureId: site.pictureId },
 		form: await emptyForm(
 			siteSchema,
@@ -60,10 +63,16 @@ function planFaults(text: string) {
 		return { faults: ['The file is not JSON.'] };
 	}
 	const read = readPlan(input);
-	return read.ok
-		? { plan: read.plan }
-		: { faults: read.faults.map(({ path, message }) => `${path}: ${message}`) };
+	if (read.ok) return { plan: read.plan };
+	const told = read.faults
+		.slice(0, mostFaultsTold)
+		.map(({ path, message }) => `${path}: ${message}`);
+	const rest = read.faults.length - told.length;
+	return { faults: rest > 0 ? [...told, `And ${rest} more of the kind.`] : told };
 }
+
+/** A list of thousands of rows may be wrong in every one. */
+const mostFaultsTold = 20;
 
 const mostPlanBytes = 1024 * 1024;
 

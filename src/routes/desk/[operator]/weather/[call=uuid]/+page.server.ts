@@ -10,7 +10,8 @@ export const load: PageServerLoad = async (event) => ({
 			const call = await demandCall(tx, event.params.call);
 			const rows = await callOffProgress(
 				tx,
-				call.slots.map(({ id }) => id)
+				call.slots.map(({ id }) => id),
+				call.createdAt
 			);
 			return { call, rows };
 		})

@@ -38,13 +38,23 @@ export const load: PageServerLoad = async (event) => {
 		order: {
 			...found,
 			vividness: bowStrip(found.dropDiameterUm).vividness,
+			// What a visitor is told of a move; who did it stays with the operator.
+			moves: found.moves.map(({ id, wishedBy, words, fromDate, fromStartsAt }) => ({
+				id,
+				wishedBy,
+				words,
+				fromDate,
+				fromStartsAt
+			})),
 			lapsed: found.status === 'pending' && found.holdUntil <= now,
 			tickets: await Promise.all(
-				found.tickets.map(async (ticket) => ({
-					...ticket,
-					code: groupedCode(ticket.code),
-					qr: ticket.status === 'valid' ? await ticketQrAddress(ticket.code) : null
-				}))
+				found.tickets
+					.filter(({ status }) => status !== 'moved')
+					.map(async (ticket) => ({
+						...ticket,
+						code: groupedCode(ticket.code),
+						qr: ticket.status === 'valid' ? await ticketQrAddress(ticket.code) : null
+					}))
 			)
 		},
 		terms,

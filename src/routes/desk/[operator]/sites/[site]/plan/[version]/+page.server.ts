@@ -1,9 +1,11 @@
 import { fail, redirect } from '@sveltejs/kit';
 import { localClock } from '$lib/schedule';
 import { fieldsFromPlan, planFromFields, type PlanFields } from '$lib/schemas/plan-form';
+import { clashWords, type Clash } from '$lib/plan-merge/merge';
+import { readPlan, type Plan, type PlanFault } from '$lib/schemas/plan';
 import { Refusal } from '$lib/server/failures';
 import { inDesk, orError } from '$lib/server/http';
-import { addPlan, demandPlan, makeLive, savePlan } from '$lib/server/sites/plans';
+import { addPlan, demandPlan, mergePlan, savePlan } from '$lib/server/sites/plans';
 import { demandSite } from '$lib/server/sites/sites';
 import type { TenantTx } from '$lib/server/db/transaction';
 import type { Actions, PageServerLoad, RequestEvent } from './$types';
@@ -21,34 +23,54 @@ export const load: PageServerLoad = async (event) => {
 		today: localClock(site.timeZone).dateAt(Date.now()),
 		state: plan.state,
 		revision: plan.revision,
+		base: JSON.stringify(plan.body),
 		everLive: plan.liveSince !== null,
 		body: plan.body,
 		fields: fieldsFromPlan(plan.body)
 	};
 };
 
-/** What the form sent, whole: a refusal gives all of it back. */
-async function readFields(event: RequestEvent): Promise<{ fields: PlanFields; revision: number }> {
+/** What the form sent. */
+interface Sent {
+	fields: PlanFields;
+	/** The count of saves that the work began from, and the plan as it was then, as JSON. */
+	revision: number;
+	base: string;
+}
+
+/** What a refusal gives back: all that was sent. A second try must not pass for newer than it is. */
+const back = ({ fields, revision, base }: Sent) => ({
+	fields,
+	revision,
+	base,
+	faults: [] as PlanFault[],
+	refused: '',
+	mayMerge: false,
+	merged: null as { taken: number; clashes: string[] } | null
+});
+
+async function readSent(event: RequestEvent): Promise<Sent> {
 	const fields: PlanFields = {};
+	const sent: Sent = { fields, revision: 0, base: '' };
 	for (const [name, value] of await event.request.formData()) {
-		if (typeof value === 'string' && name.length < 60) fields[name] = value;
+		if (typeof value !== 'string' || name.length >= 60) continue;
+		if (name === 'revision') sent.revision = Number(value) || 0;
+		else if (name === 'base') sent.base = value;
+		else fields[name] = value;
 	}
-	return { fields, revision: Number(fields['revision']) || 0 };
+	return sent;
 }
 
 /** Reads the tables and acts on the plan; faults and refusals come back with what was typed. */
-async function withPlan(
+async function withPlan<T>(
 	event: RequestEvent,
-	act: (
-		tx: TenantTx,
-		read: { plan: Parameters<typeof savePlan>[1]['body']; revision: number }
-	) => Promise<number>
+	act: (tx: TenantTx, read: { plan: Plan; sent: Sent }) => Promise<T>
 ) {
-	const { fields, revision } = await readFields(event);
+	const sent = await readSent(event);
 	try {
-		const version = await inDesk(event, async (tx) => {
+		const done = await inDesk(event, async (tx) => {
 			const at = await demandSite(tx, event.params.site);
-			const read = planFromFields(fields, {
+			const read = planFromFields(sent.fields, {
 				name: at.name,
 				latitude: at.latitudeDeg,
 				longitude: at.longitudeDeg,
@@ -56,20 +78,33 @@ async function withPlan(
 				timeZone: at.timeZone
 			});
 			if ('faults' in read) throw new PlanWrong(read.faults);
-			return act(tx, { plan: read.plan, revision });
+			return act(tx, { plan: read.plan, sent });
 		});
-		return { version };
+		return { done, sent };
 	} catch (thrown) {
-		if (thrown instanceof PlanWrong)
-			return fail(400, { faults: thrown.faults, fields, refused: '' });
+		if (thrown instanceof PlanWrong) {
+			return { failed: fail(400, { ...back(sent), faults: thrown.faults }) };
+		}
 		if (!(thrown instanceof Refusal)) throw thrown;
-		return fail(thrown.status, { faults: [], fields, refused: thrown.message });
+		const { status, message } = thrown;
+		const mayMerge = status === 409 && readBase(sent.base) !== null;
+		return { failed: fail(status, { ...back(sent), refused: message, mayMerge }) };
+	}
+}
+
+/** The plan that the work began from, as the form carries it. */
+function readBase(text: string): Plan | null {
+	try {
+		const read = readPlan(JSON.parse(text));
+		return read.ok ? read.plan : null;
+	} catch {
+		return null;
 	}
 }
 
 /** Carries the faults of a plan out of its transaction. */
 class PlanWrong extends Error {
-	constructor(readonly faults: { path: string; message: string }[]) {
+	constructor(readonly faults: PlanFault[]) {
 		super('the plan is wrong');
 	}
 }
@@ -79,26 +114,37 @@ const pathOf = (event: RequestEvent, version: number) =>
 
 export const actions: Actions = {
 	save: async (event) => {
-		const done = await withPlan(event, async (tx, { plan, revision }) => {
-			const version = Number(event.params.version);
-			await savePlan(tx, { slug: event.params.site, version, revision, body: plan });
-			return version;
+		const version = Number(event.params.version);
+		const answer = await withPlan(event, (tx, { plan, sent: { revision } }) =>
+			savePlan(tx, { slug: event.params.site, version, revision, body: plan })
+		);
+		if (answer.failed) return answer.failed;
+		redirect(303, `${pathOf(event, version)}?saved`);
+	},
+	merge: async (event) => {
+		const version = Number(event.params.version);
+		const answer = await withPlan(event, (tx, { plan, sent }) => {
+			const base = readBase(sent.base);
+			if (!base) throw new Refusal('invalid', 'What you began from is not known any more.');
+			return mergePlan(tx, { slug: event.params.site, version, base, mine: plan });
 		});
-		if (!('version' in done)) return done;
-		redirect(303, `${pathOf(event, done.version)}?saved`);
+		if (answer.failed) return answer.failed;
+		const { plan, theirs, revision, taken, clashes } = answer.done;
+		return {
+			...back({ fields: fieldsFromPlan(plan), revision, base: JSON.stringify(theirs) }),
+			merged: { taken, clashes: clashes.map((clash) => mergeWords(clash)) }
+		};
 	},
 	copy: async (event) => {
-		const done = await withPlan(event, (tx, { plan }) => addPlan(tx, event.params.site, plan));
-		if (!('version' in done)) return done;
-		redirect(303, `${pathOf(event, done.version)}?saved`);
-	},
-	live: async (event) => {
-		try {
-			await inDesk(event, (tx) => makeLive(tx, event.params.site, Number(event.params.version)));
-		} catch (thrown) {
-			if (!(thrown instanceof Refusal)) throw thrown;
-			return fail(thrown.status, { faults: [], fields: null, refused: thrown.message });
-		}
-		redirect(303, `/desk/${event.params.operator}/sites/${event.params.site}/windows`);
+		const answer = await withPlan(event, (tx, { plan }) => addPlan(tx, event.params.site, plan));
+		if (answer.failed) return answer.failed;
+		redirect(303, `${pathOf(event, answer.done)}?saved`);
 	}
 };
+
+/** A clash in words, with what they have where it is a number. */
+function mergeWords(clash: Clash): string {
+	const theirs = Object.values(clash.theirs ?? {});
+	const short = clash.kind === 'changed' && theirs.every((value) => typeof value !== 'object');
+	return `${clashWords(clash)}${short ? ` Theirs: ${theirs.map((value) => value ?? 'none').join(' to ')}.` : ''}`;
+}

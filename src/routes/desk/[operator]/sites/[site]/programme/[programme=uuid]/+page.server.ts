@@ -5,20 +5,23 @@ import { formFromProgramme, programmeFromForm } from '$lib/server/programmes/for
 import { demandProgramme, listZones, saveProgramme } from '$lib/server/programmes/programmes';
 import { previewProgramme, publishProgramme } from '$lib/server/programmes/publish';
 import { askForWindows, listComputations } from '$lib/server/sites/compute';
-import { demandSite } from '$lib/server/sites/sites';
+import { keptOf } from '$lib/server/sites/conflict-basis';
+import { demandSite, livePlan } from '$lib/server/sites/sites';
 import type { Actions, PageServerLoad } from './$types';
 
 export const load: PageServerLoad = async (event) => {
 	const now = new Date();
-	const { site, zones, found, preview, running } = await orError(
+	const { site, zones, found, preview, running, kept } = await orError(
 		inDesk(event, async (tx) => {
 			const site = await demandSite(tx, event.params.site);
 			const computations = await listComputations(tx, site.id);
+			const live = await livePlan(tx, site.id);
 			return {
 				site,
 				zones: await listZones(tx, site.id),
 				found: await demandProgramme(tx, site.id, event.params.programme),
 				preview: await previewProgramme(tx, site.slug, event.params.programme, now),
+				kept: live ? await keptOf(tx, live.id) : new Map<string, never>(),
 				running: computations.find(({ state }) => state === 'waiting' || state === 'running')
 			};
 		})
@@ -71,7 +74,8 @@ export const load: PageServerLoad = async (event) => {
 				id: slot.id,
 				sold: slot.sold,
 				held: slot.held,
-				outsideWindows
+				outsideWindows,
+				kept: kept.get(slot.id) ?? null
 			})),
 			blocked: difference.blocked.map(interval),
 			uncoveredMinutes: difference.uncoveredMinutes,

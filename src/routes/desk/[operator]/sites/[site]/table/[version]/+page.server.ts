@@ -4,7 +4,7 @@ import { readPlan, type Plan, type PlanFault } from '$lib/schemas/plan';
 import type { TenantTx } from '$lib/server/db/transaction';
 import { Refusal } from '$lib/server/failures';
 import { inDesk, orError } from '$lib/server/http';
-import { addPlan, demandPlan, savePlan } from '$lib/server/sites/plans';
+import { addPlan, demandPlan, mergePlan, savePlan } from '$lib/server/sites/plans';
 import { demandSite } from '$lib/server/sites/sites';
 import type { Actions, PageServerLoad } from './$types';
 
@@ -27,30 +27,40 @@ export const load: PageServerLoad = async (event) => {
 	};
 };
 
-/** What the table sent: the plan as JSON, checked by the engine's schema, and the revision it began from. */
-async function readSent(event: RequestEvent): Promise<{
-	read: { ok: true; plan: Plan } | { ok: false; faults: PlanFault[] };
-	revision: number;
-}> {
-	const form = await event.request.formData();
-	const text = form.get('plan');
+type Read = { ok: true; plan: Plan } | { ok: false; faults: PlanFault[] };
+
+/** A plan that was sent as JSON, checked by the engine's schema. */
+function readJson(text: FormDataEntryValue | null): Read {
 	let input: unknown = null;
 	try {
 		input = JSON.parse(typeof text === 'string' ? text : '');
 	} catch {
 		// No JSON at all is told as a plan that is missing.
 	}
-	return { read: readPlan(input), revision: Number(form.get('revision')) || 0 };
+	return readPlan(input);
+}
+
+/** What the table sent: the plan, and what its work began from: the revision, to merge the plan too. */
+async function readSent(
+	event: RequestEvent
+): Promise<{ read: Read; revision: number; base: Plan | null }> {
+	const form = await event.request.formData();
+	const base = readJson(form.get('base'));
+	return {
+		read: readJson(form.get('plan')),
+		revision: Number(form.get('revision')) || 0,
+		base: base.ok ? base.plan : null
+	};
 }
 
 async function withPlan<T>(
 	event: RequestEvent,
-	act: (tx: TenantTx, sent: { plan: Plan; revision: number }) => Promise<T>
+	act: (tx: TenantTx, sent: { plan: Plan; revision: number; base: Plan | null }) => Promise<T>
 ) {
-	const { read, revision } = await readSent(event);
+	const { read, revision, base } = await readSent(event);
 	if (!read.ok) return fail(400, { faults: read.faults, refused: '', status: 400 });
 	try {
-		return await inDesk(event, (tx) => act(tx, { plan: read.plan, revision }));
+		return await inDesk(event, (tx) => act(tx, { plan: read.plan, revision, base }));
 	} catch (thrown) {
 		if (!(thrown instanceof Refusal)) throw thrown;
 		const { status, message } = thrown;
@@ -64,6 +74,13 @@ export const actions: Actions = {
 			const { site: slug, version } = event.params as { site: string; version: string };
 			await savePlan(tx, { slug, version: Number(version), revision, body: plan });
 			return { saved: revision + 1 };
+		}),
+	/** Nothing is saved: the table shows the outcome as an act that can be undone. */
+	merge: (event) =>
+		withPlan(event, async (tx, { plan: mine, base }) => {
+			if (!base) throw new Refusal('invalid', 'What you began from is not known any more.');
+			const { site: slug, version } = event.params as { site: string; version: string };
+			return { merge: await mergePlan(tx, { slug, version: Number(version), base, mine }) };
 		}),
 	copy: async (event) => {
 		const done = await withPlan(event, async (tx, { plan }) => ({

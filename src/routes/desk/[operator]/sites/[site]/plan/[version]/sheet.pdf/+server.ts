@@ -1,6 +1,7 @@
 import { inDesk, orError } from '$lib/server/http';
 import { readOperator } from '$lib/server/operators/operators';
-import { newestComputation, readWindows } from '$lib/server/sites/compute';
+import { addDays, localClock } from '$lib/schedule';
+import { yearOfPlan } from '$lib/server/sites/plan-year';
 import { demandPlan } from '$lib/server/sites/plans';
 import { sheetPdf } from '$lib/server/sites/sheet';
 import { demandSite } from '$lib/server/sites/sites';
@@ -12,8 +13,6 @@ export const GET: RequestHandler = async (event) => {
 		inDesk(event, async (tx) => {
 			const site = await demandSite(tx, event.params.site);
 			const plan = await demandPlan(tx, site.id, Number(event.params.version));
-			const computed = await newestComputation(tx, plan.id);
-			const range = computed && { from: computed.fromDate, to: computed.toDate };
 			return {
 				operator: (await readOperator(tx)).name,
 				site: site.name,
@@ -21,14 +20,14 @@ export const GET: RequestHandler = async (event) => {
 				state: plan.state,
 				changedAt: plan.changedAt,
 				plan: plan.body,
-				season:
-					computed && range
-						? { ...range, windows: await readWindows(tx, computed.id, range) }
-						: null
+				today: localClock(site.timeZone).dateAt(Date.now())
 			};
 		})
 	);
-	return new Response(new Uint8Array(await sheetPdf(sheet)), {
+	// In the last quarter of a year it is the next one that is planned, as on the year sheet.
+	const year = Number(addDays(sheet.today, 92).slice(0, 4));
+	const pdf = await sheetPdf({ ...sheet, year: await yearOfPlan(sheet.plan, year) });
+	return new Response(new Uint8Array(pdf), {
 		headers: {
 			'content-type': 'application/pdf',
 			'content-disposition': `inline; filename="${event.params.site}-${sheet.version}.pdf"`,

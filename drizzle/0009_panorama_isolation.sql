@@ -1,0 +1,1 @@
+SELECT force_row_level_security();

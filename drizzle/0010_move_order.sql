@@ -1,0 +1,1 @@
+ALTER TABLE "order_move" ALTER COLUMN "created_at" SET DEFAULT clock_timestamp();

@@ -1,0 +1,2 @@
+/** Largest picture that is taken in, bytes. */
+export const mostPictureBytes = 10 * 1024 * 1024;
