@@ -8,12 +8,11 @@ import { FIELD_SIZE, searchPlaces, type PlaceWorker } from '../../../src/lib/pla
 import { PlaceWork } from '../../../src/lib/place-search/work';
 import { terraceQuestion } from '../../support/place-question';
 import { fourByFour, quarryTerrace } from '../../support/plans';
-import { median, timeMs, type Measure, type Section } from '../measure';
+import { median, medianTimesMs, type Measure, type Section } from '../measure';
 
 /** What is asked of a search: so many placements over a season, in so long, on two cores. */
 const ASKED = 2000;
 const ALLOWED_S = 60;
-const ROUNDS = 3;
 /** Whole searches of the busy plan take longer: one is enough. */
 const SEARCHES = { example: 3, busy: 1 };
 
@@ -57,45 +56,48 @@ async function search(question: PlaceQuestion, workers: number) {
 	return { askedS, fieldS, allS, judged };
 }
 
-/** Milliseconds of one look of one eye at one curtain: what settling a part of the sky is made of. */
-function lookMs(site: Site): number {
+/** Suns under which looks are timed. */
+const SUNS = 2000;
+
+/** Looks of every eye of the zone at the first curtain, under many suns. */
+function looks(site: Site): number {
 	const sight = new Sight(
 		{ curtains: site.curtains.slice(0, 1), walls: site.walls },
 		site.zones[0]!.eyes
 	);
-	const looks = 400;
 	let sum = 0;
-	const times = Array.from({ length: 7 }, () =>
-		timeMs(() => {
-			for (let i = 0; i < looks; i++) {
-				sight.setSun(
-					ringFrame({ azimuthDeg: 80 + (i * 120) / looks, altitudeDeg: 5 + (i * 40) / looks })
-				);
-				for (let e = 0; e < sight.eyes.length; e++) sum += sight.arcDeg(e);
-			}
-			return sum;
-		})
-	);
-	return median(times.slice(2)) / looks / sight.eyes.length;
+	for (let i = 0; i < SUNS; i++) {
+		const part = i / SUNS;
+		sight.setSun(ringFrame({ azimuthDeg: 80 + 120 * part, altitudeDeg: 5 + 40 * part }));
+		for (let e = 0; e < sight.eyes.length; e++) sum += sight.arcDeg(e);
+	}
+	return sum;
 }
 
+/** What one worker does in a field, held against as many bare looks as could settle it at the least. */
 function oneWorker(question: PlaceQuestion): {
 	perS: number;
 	askedOver: number;
 	overLeast: number;
 } {
+	const site = createSite(question.plan);
 	const work = new PlaceWork(question);
-	const field = placementField(question.area, question.curtain.lengthM, ASKED).slice(0, 500);
-	const judge = () => field.forEach((one) => work.judge.coarseMinutes(one));
-	judge();
-	work.judge.eyesAsked = 0;
-	work.judge.eyesNeeded = 0;
-	const ms = median(Array.from({ length: ROUNDS }, () => timeMs(judge)));
-	const needed = work.judge.eyesNeeded / ROUNDS;
+	const field = placementField(question.area, question.curtain.lengthM, ASKED).slice(0, 250);
+	const times = medianTimesMs(
+		{
+			judge: () => field.forEach((one) => work.judge.coarseMinutes(one)),
+			looks: () => looks(site)
+		},
+		5
+	);
+	const { eyesAsked, eyesNeeded } = work.judge;
+	// One round more than those that count, for the code to be warm.
+	const neededInARound = eyesNeeded / 6;
+	const looksInARound = SUNS * site.zones[0]!.eyes.length;
 	return {
-		perS: (field.length / ms) * 1000,
-		askedOver: work.judge.eyesAsked / work.judge.eyesNeeded,
-		overLeast: ms / (needed * lookMs(createSite(question.plan)))
+		perS: (field.length / times.judge) * 1000,
+		askedOver: eyesAsked / eyesNeeded,
+		overLeast: (times.ratios('judge', 'looks') * looksInARound) / neededInARound
 	};
 }
 
