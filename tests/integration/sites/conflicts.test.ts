@@ -202,7 +202,11 @@ test('made live with no decision, the slots are untouched and listed as undecide
 	expect((await planner.look(null)).undecided).toHaveLength(3);
 	// A conflict that is not named in the form stays undecided.
 	const { digest } = await planner.look(null);
-	await planner.decide(digest, [{ slotId: one.id, choice: 'keep' }]);
+	// It stays so too when it is left for later.
+	await planner.decide(digest, [
+		{ slotId: one.id, choice: 'keep' },
+		{ slotId: two.id, choice: 'later' }
+	]);
 	expect((await planner.look(null)).undecided.map(({ slotId }) => slotId)).toEqual([
 		two.id,
 		replan.outside[2]!.id
