@@ -1,21 +1,24 @@
 import { parseArgs } from 'node:util';
 import type { Section } from './measure';
-import { framesSection } from './sections/frames';
-import { placeSearchSection } from './sections/place-search';
-import { planTableSection } from './sections/plan-table';
-import { windowsSection } from './sections/windows';
 
 /**
- * The bench: ratios measured within one run, medians over several rounds, warm.
+ * The bench: ratios measured within one run, medians over several rounds, warm. Only what is asked for is
+ * loaded: a browser's driver in memory slows what is measured beside it.
  *
  *     npm run --silent bench                          every section, as a table
  *     npm run --silent bench -- --only windows --json one section, as [{ "name", "value", "unit" }]
  */
-const sections: readonly Section[] = [
-	windowsSection,
-	planTableSection,
-	placeSearchSection,
-	framesSection
+const sections: readonly { name: string; load: () => Promise<Section> }[] = [
+	{ name: 'windows', load: async () => (await import('./sections/windows')).windowsSection },
+	{
+		name: 'plan-table',
+		load: async () => (await import('./sections/plan-table')).planTableSection
+	},
+	{
+		name: 'place-search',
+		load: async () => (await import('./sections/place-search')).placeSearchSection
+	},
+	{ name: 'frames', load: async () => (await import('./sections/frames')).framesSection }
 ];
 
 async function main(): Promise<number> {
@@ -29,7 +32,7 @@ async function main(): Promise<number> {
 		return 2;
 	}
 	const measures = [];
-	for (const section of asked) measures.push(...(await section.run()));
+	for (const { load } of asked) measures.push(...(await (await load()).run()));
 	if (values.json) {
 		process.stdout.write(`${JSON.stringify(measures, null, 2)}\n`);
 		return 0;

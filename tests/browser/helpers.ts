@@ -182,10 +182,11 @@ function whatSticksOut(): string[] {
 		.slice(0, 5);
 }
 
-/** Pages of one kind, such as those of two slots, look alike: one of each kind is enough. */
+/** Pages of one kind, such as those of two slots or two sites, look alike: one of each kind is enough. */
 function kindOf(path: string): string {
 	return path
 		.replaceAll(/[0-9a-f]{8}-[0-9a-f]{4}-[0-9a-f-]{22}/g, '*')
+		.replaceAll(/\/sites\/(?!new\b)[\w-]+/g, '/sites/*')
 		.replaceAll(/\/[\w-]{20,}/g, '/*')
 		.replaceAll(/\d+/g, '#');
 }
